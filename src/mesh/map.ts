@@ -1,0 +1,118 @@
+// The map from the reference triangle to an element: straight, plus a bulge for each side that lies on an arc, exact.
+// Blending of W.J. Gordon, C.A. Hall, Numer. Math. 21 (1973) 109, in the smooth form for triangles of B. Szabo, I. Babuska,
+// Finite Element Analysis, 1991, ch. 6: X = sum Li Vi + sum over sides La Lb bulge(Lb - La),
+// where La Lb bulge(s) = curve(s) - chord(s) on the side itself, so bulge(s) = 4 (curve(s) - chord(s)) / (1 - s^2).
+
+import type { Curve, Plate } from '../case/plate.ts'
+import { edgeUnder, type Mesh } from './mesh.ts'
+
+/** Coefficients of the bulge as a polynomial in s, (x, y) interleaved, ascending powers. */
+export type Bulge = Float64Array
+
+/** Powers kept: the series' last term is below 1e-17 for a half-angle of 0.8 (an element on a quarter circle). */
+const TERMS = 10
+
+/**
+ * Bulge of the part t0 .. t1 of an arc, null for a line. With U, V the arc's conjugate radii at the middle of the part and
+ * alpha its half-angle, curve - chord = U (cos(alpha s) - cos alpha) + V (sin(alpha s) - s sin alpha); both brackets are
+ * divided by 1 - s^2 term by term in their Taylor series, so nothing cancels at the ends.
+ * @throws RangeError when the part sweeps more than 120 degrees (the series would be cut too early)
+ */
+export function bulgeOf(curve: Curve, t0: number, t1: number): Bulge | null {
+  if (curve.kind === 'line') return null
+  const middle = curve.start + (curve.sweep * (t0 + t1)) / 2
+  const alpha = (curve.sweep * (t1 - t0)) / 2
+  if (Math.abs(alpha) > Math.PI / 3) throw new RangeError(`a curved side sweeps ${2 * alpha} rad`)
+  const cosTilt = Math.cos(curve.tilt)
+  const sinTilt = Math.sin(curve.tilt)
+  const [a, b] = curve.axes
+  const turn = (x: number, y: number) => [cosTilt * x - sinTilt * y, sinTilt * x + cosTilt * y]
+  const [ux, uy] = turn(a * Math.cos(middle), b * Math.sin(middle))
+  const [vx, vy] = turn(-a * Math.sin(middle), b * Math.cos(middle))
+
+  const bulge = new Float64Array(4 * TERMS)
+  // coefficient of s^(2j): minus the sum over k > j of (-1)^k alpha^(2k) / (2k)!; of s^(2j+1): the same with 2k + 1
+  let even = 0
+  let odd = 0
+  for (let j = TERMS - 1; j >= 0; j--) {
+    const k = j + 1
+    const term = ((-1) ** k * alpha ** (2 * k)) / factorial(2 * k)
+    even -= term
+    odd -= (term * alpha) / (2 * k + 1)
+    bulge[4 * j] = 4 * ux * even
+    bulge[4 * j + 1] = 4 * uy * even
+    bulge[4 * j + 2] = 4 * vx * odd
+    bulge[4 * j + 3] = 4 * vy * odd
+  }
+  return bulge
+}
+
+function factorial(n: number): number {
+  let product = 1
+  for (let k = 2; k <= n; k++) product *= k
+  return product
+}
+
+/** The bulge of each boundary side of a mesh, in the order of `mesh.boundary`; null where it lies on a line. */
+export function bulgesOf(plate: Plate, mesh: Mesh): (Bulge | null)[] {
+  const { count, span } = mesh.boundary
+  return Array.from({ length: count }, (_, b) => bulgeOf(edgeUnder(plate, mesh, b).curve, span[2 * b], span[2 * b + 1]))
+}
+
+/** The map of one triangle: its corners and the bulges of its three sides. */
+export interface TriangleMap {
+  /** (x, y) of the three nodes. */
+  readonly corner: Float64Array
+  readonly bulge: readonly (Bulge | null)[]
+  readonly curved: boolean
+}
+
+export function triangleMap(mesh: Mesh, bulges: readonly (Bulge | null)[], triangle: number): TriangleMap {
+  const corner = new Float64Array(6)
+  const bulge: (Bulge | null)[] = []
+  for (let k = 0; k < 3; k++) {
+    const node = mesh.triangle[3 * triangle + k]
+    corner[2 * k] = mesh.point[2 * node]
+    corner[2 * k + 1] = mesh.point[2 * node + 1]
+    const b = mesh.sideBoundary[mesh.triangleSide[3 * triangle + k]]
+    bulge.push(b < 0 ? null : bulges[b])
+  }
+  return { corner, bulge, curved: bulge.some((side) => side !== null) }
+}
+
+/** Fills out with x, y, dx/dxi, dy/dxi, dx/deta, dy/deta at the reference point (xi, eta). */
+export function mapPoint({ corner, bulge, curved }: TriangleMap, xi: number, eta: number, out: Float64Array): void {
+  const [x0, y0, x1, y1, x2, y2] = corner
+  out[0] = x0 + xi * (x1 - x0) + eta * (x2 - x0)
+  out[1] = y0 + xi * (y1 - y0) + eta * (y2 - y0)
+  out[2] = x1 - x0
+  out[3] = y1 - y0
+  out[4] = x2 - x0
+  out[5] = y2 - y0
+  if (!curved) return
+  const l = [1 - xi - eta, xi, eta]
+  const lXi = [-1, 1, 0]
+  const lEta = [-1, 0, 1]
+  for (let side = 0; side < 3; side++) {
+    const coefficient = bulge[side]
+    if (!coefficient) continue
+    const a = side
+    const b = (side + 1) % 3
+    const s = l[b] - l[a]
+    const product = l[a] * l[b]
+    const productXi = lXi[a] * l[b] + l[a] * lXi[b]
+    const productEta = lEta[a] * l[b] + l[a] * lEta[b]
+    for (let axis = 0; axis < 2; axis++) {
+      // Horner for the bulge and its slope
+      let value = 0
+      let slope = 0
+      for (let power = 2 * TERMS - 1; power >= 0; power--) {
+        slope = slope * s + value
+        value = value * s + coefficient[2 * power + axis]
+      }
+      out[axis] += product * value
+      out[2 + axis] += productXi * value + product * slope * (lXi[b] - lXi[a])
+      out[4 + axis] += productEta * value + product * slope * (lEta[b] - lEta[a])
+    }
+  }
+}

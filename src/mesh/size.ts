@@ -1,0 +1,187 @@
+// How large an element may be, and where: the smallest over all sources of (size + growth * distance to the source).
+// Sources sit on the boundary: on arcs (curvature), at tangent points where the curvature jumps, at corners, and wherever
+// the gap across the material to another edge is small. Lengths in plate units.
+
+import { derivativeOn, lengthOf, outwardNormal, pointOn, radiusOfCurvature } from '../case/plate.ts'
+import type { Arc, Curve, Edge, Plate, Point } from '../case/plate.ts'
+
+/** Element size wanted at (x, y). */
+export type SizeField = (x: number, y: number) => number
+
+/** How fine a mesh is asked for. */
+export interface Fineness {
+  /** Halvings asked for at each raiser, by index in `Plate.raisers`. */
+  readonly raiser: readonly number[]
+  /** Halvings asked for everywhere. */
+  readonly all: number
+}
+
+/** Element sides on an arc turn by about this angle at most (30 degrees): the stress along a hole's edge varies like cos 2 theta. */
+const ARC_ANGLE = Math.PI / 6
+/** Size at a tangent point of an arc and a line, in radii: the stress is continuous there, its slope is not. */
+const TANGENT = 0.25
+/** Size at a corner of a raiser (a notch's mouth, the upper end of a large fillet), in lengths of its shorter edge. */
+const CORNER = 0.35
+/** Size at a sharp re-entrant corner, in lengths of its shorter edge: the singular field must not spoil its surroundings. */
+const SHARP = 1e-3
+/** Size in a gap between two edges, in widths of the gap. */
+const GAP = 1
+/** Growth of the size with the distance from a source. */
+const GROWTH = 0.75
+/** Samples along an edge that look across the material for gaps. */
+const SAMPLES = 16
+
+interface Source {
+  readonly x: number
+  readonly y: number
+  readonly size: number
+}
+
+/** The size field of a plate at a fineness. Cost of a call: the number of sources that are not covered by others. */
+export function sizeField(plate: Plate, fineness: Fineness): SizeField {
+  const sources = independent([
+    ...arcSources(plate, fineness),
+    ...joinSources(plate, fineness),
+    ...gapSources(plate, fineness)
+  ])
+  const count = sources.length
+  const x = Float64Array.from(sources, (source) => source.x)
+  const y = Float64Array.from(sources, (source) => source.y)
+  const size = Float64Array.from(sources, (source) => source.size)
+  return (px, py) => {
+    let smallest = Infinity
+    for (let i = 0; i < count; i++) {
+      const here = size[i] + GROWTH * Math.hypot(px - x[i], py - y[i])
+      if (here < smallest) smallest = here
+    }
+    return smallest
+  }
+}
+
+/** 2 to the minus halvings for what belongs to a raiser (or to none: -1). */
+function scaleFor({ raiser, all }: Fineness, index: number): number {
+  return 2 ** -(all + (index < 0 ? 0 : raiser[index]))
+}
+
+/** Sources along every arc: a length that turns by ARC_ANGLE, or the whole arc where that is shorter. */
+function arcSources(plate: Plate, fineness: Fineness): Source[] {
+  const sources: Source[] = []
+  for (const { curve, raiser } of plate.loops.flat()) {
+    if (curve.kind === 'line') continue
+    const steps = 2 * Math.ceil(Math.abs(curve.sweep) / ARC_ANGLE)
+    for (let i = 0; i <= steps; i++) {
+      const [x, y] = pointOn(curve, i / steps)
+      const size = Math.min(radiusOfCurvature(curve, i / steps) * ARC_ANGLE, lengthOf(curve))
+      sources.push({ x, y, size: size * scaleFor(fineness, raiser) })
+    }
+  }
+  return sources
+}
+
+/** Sources where two edges meet: tangent points with a jump of curvature, corners of raisers, sharp corners. */
+function joinSources(plate: Plate, fineness: Fineness): Source[] {
+  const sources: Source[] = []
+  for (const loop of plate.loops) {
+    loop.forEach((after, i) => {
+      const before = loop[(i + loop.length - 1) % loop.length]
+      const [x, y] = after.curve.from
+      const shorter = Math.min(lengthOf(before.curve), lengthOf(after.curve))
+      const raiser = Math.max(before.raiser, after.raiser)
+      const sharp = plate.sharpCorners.find(({ at }) => at[0] === x && at[1] === y)
+      let size = Infinity
+      if (sharp) size = SHARP * shorter
+      else if (raiser >= 0) size = tangentAt(before, after) ? tangentSize(before.curve, after.curve) : CORNER * shorter
+      if (Number.isFinite(size)) sources.push({ x, y, size: size * scaleFor(fineness, raiser) })
+    })
+  }
+  return sources
+}
+
+function tangentAt(before: Edge, after: Edge): boolean {
+  const [ax, ay] = derivativeOn(before.curve, 1)
+  const [bx, by] = derivativeOn(after.curve, 0)
+  return Math.abs(ax * by - ay * bx) < 1e-3 * Math.hypot(ax, ay) * Math.hypot(bx, by) && ax * bx + ay * by > 0
+}
+
+/** Size at a tangent point: a part of the smaller radius, Infinity where the curvature does not jump. */
+function tangentSize(before: Curve, after: Curve): number {
+  const a = radiusOfCurvature(before, 1)
+  const b = radiusOfCurvature(after, 0)
+  if (a === b || Math.abs(a - b) < 1e-6 * a) return Infinity
+  return TANGENT * Math.min(a, b, lengthOf(before), lengthOf(after))
+}
+
+/** Sources on both sides of narrow material: the distance from points of each edge to the edges that face it. */
+function gapSources(plate: Plate, fineness: Fineness): Source[] {
+  const sources: Source[] = []
+  const places = plate.loops.flatMap((loop, l) => loop.map((edge, e) => ({ edge, loop: l, position: e, size: loop.length })))
+  for (const own of places) {
+    for (let i = 0; i <= SAMPLES; i++) {
+      const point = pointOn(own.edge.curve, i / SAMPLES)
+      const normal = outwardNormal(own.edge.curve, i / SAMPLES)
+      let gap = Infinity
+      for (const other of places) {
+        if (other === own || (other.loop === own.loop && neighbours(own.position, other.position, own.size))) continue
+        gap = Math.min(gap, facingDistance(point, normal, other.edge.curve))
+      }
+      if (!Number.isFinite(gap)) continue
+      sources.push({ x: point[0], y: point[1], size: GAP * gap * scaleFor(fineness, own.edge.raiser) })
+    }
+  }
+  return sources
+}
+
+function neighbours(a: number, b: number, count: number): boolean {
+  const apart = Math.abs(a - b)
+  return apart === 1 || apart === count - 1
+}
+
+/** Distance from a boundary point into the material to a curve that it faces (within 60 degrees of its normal), else Infinity. */
+function facingDistance([x, y]: Point, normal: Point, curve: Curve): number {
+  const [qx, qy] = nearestOn(curve, x, y)
+  const distance = Math.hypot(qx - x, qy - y)
+  const inward = -(normal[0] * (qx - x) + normal[1] * (qy - y))
+  return inward > 0.5 * distance ? distance : Infinity
+}
+
+/** The point of a curve nearest to (x, y): closed form for lines and circles, sampled and refined for ellipses. */
+function nearestOn(curve: Curve, x: number, y: number): Point {
+  if (curve.kind === 'line') {
+    const [dx, dy] = derivativeOn(curve, 0)
+    const t = ((x - curve.from[0]) * dx + (y - curve.from[1]) * dy) / (dx * dx + dy * dy)
+    return pointOn(curve, Math.min(1, Math.max(0, t)))
+  }
+  if (curve.axes[0] === curve.axes[1]) return nearestOnCircle(curve, x, y)
+  let best = 0
+  let least = Infinity
+  for (let width = 1 / 32, from = 0, to = 1, round = 0; round < 4; round++, width /= 16) {
+    for (let t = from; t <= to + width / 2; t += width) {
+      const [px, py] = pointOn(curve, Math.min(t, 1))
+      const distance = Math.hypot(px - x, py - y)
+      if (distance < least) [least, best] = [distance, Math.min(t, 1)]
+    }
+    from = Math.max(0, best - width)
+    to = Math.min(1, best + width)
+  }
+  return pointOn(curve, best)
+}
+
+function nearestOnCircle(curve: Arc, x: number, y: number): Point {
+  const phi = Math.atan2(y - curve.centre[1], x - curve.centre[0]) - curve.tilt
+  const turn = 2 * Math.PI
+  // parameter of phi, counted in the arc's own sense from its start
+  const ahead = (((phi - curve.start) * Math.sign(curve.sweep)) % turn + turn) % turn
+  if (ahead <= Math.abs(curve.sweep)) return pointOn(curve, ahead / Math.abs(curve.sweep))
+  const { from, to } = curve
+  return Math.hypot(from[0] - x, from[1] - y) <= Math.hypot(to[0] - x, to[1] - y) ? from : to
+}
+
+/** The sources that no other source already covers: smallest first, each kept only if it still lowers the field. */
+function independent(sources: readonly Source[]): Source[] {
+  const kept: Source[] = []
+  for (const source of sources.toSorted((a, b) => a.size - b.size)) {
+    const covered = kept.some((k) => k.size + GROWTH * Math.hypot(k.x - source.x, k.y - source.y) <= source.size)
+    if (!covered) kept.push(source)
+  }
+  return kept
+}

@@ -1,0 +1,185 @@
+// Displacement and stress anywhere in the plate, from the elements' own shape functions.
+
+import { derivativeOn, outwardNormal, pointOn, type Plate } from '../case/plate.ts'
+import { bulgesOf, mapPoint, triangleMap, type TriangleMap } from '../mesh/map.ts'
+import { edgeUnder, triangleCount, type Mesh } from '../mesh/mesh.ts'
+import { dofMap, triangleDofs, triangleSigns } from './dofs.ts'
+import { elasticity } from './element.ts'
+import { fillTriangleShape, shapeScratch, triangleModes } from './shape.ts'
+import { sideDofs, sideFunctions } from './side.ts'
+
+/** The solved plate. Plate units: E = 1, thickness 1; stresses times `plate.unit.stress` are MPa. */
+export interface Solution {
+  readonly plate: Plate
+  readonly mesh: Mesh
+  readonly order: number
+  /** All amplitudes: the outer dofs (see dofs.ts), then (order - 1)(order - 2) inner ones an element. */
+  readonly coefficient: Float64Array
+  /** |Ku - f| / (|K| |u| + |f|) of the condensed system, maximum norms. */
+  readonly residual: number
+  /** Unbalanced load, relative: of the tractions themselves, or the reactions at the supports that should vanish. */
+  readonly balance: number
+}
+
+/** Numbers a point that `fieldIn` returns. */
+export const FIELD = 7
+
+/**
+ * Field in one element at reference points (xi, eta interleaved): x, y, ux, uy, sxx, syy, sxy a point, 7 numbers each.
+ */
+export function fieldIn(solution: Solution, element: number, reference: Float64Array): Float64Array {
+  const { plate, mesh } = solution
+  return fieldOn(solution, triangleMap(mesh, bulgesOf(plate, mesh), element), element, reference)
+}
+
+/** A function like `fieldIn` for many elements of one solution. */
+export function fieldSampler(solution: Solution): (element: number, reference: Float64Array) => Float64Array {
+  const bulges = bulgesOf(solution.plate, solution.mesh)
+  return (element, reference) => fieldOn(solution, triangleMap(solution.mesh, bulges, element), element, reference)
+}
+
+function fieldOn(solution: Solution, map: TriangleMap, element: number, reference: Float64Array): Float64Array {
+  const { plate, order } = solution
+  const amplitude = amplitudesOf(solution, element)
+  const n = amplitude.length / 2
+  const { d11, d12, d33 } = elasticity(plate.nu)
+  const value = new Float64Array(n)
+  const byXi = new Float64Array(n)
+  const byEta = new Float64Array(n)
+  const at = new Float64Array(6)
+  const scratch = shapeScratch(order)
+  const points = reference.length / 2
+  const field = new Float64Array(FIELD * points)
+  for (let q = 0; q < points; q++) {
+    fillTriangleShape(order, reference[2 * q], reference[2 * q + 1], scratch, value, byXi, byEta)
+    mapPoint(map, reference[2 * q], reference[2 * q + 1], at)
+    let [ux, uy, uxXi, uxEta, uyXi, uyEta] = [0, 0, 0, 0, 0, 0]
+    for (let i = 0; i < n; i++) {
+      const a = amplitude[2 * i]
+      const b = amplitude[2 * i + 1]
+      ux += value[i] * a
+      uy += value[i] * b
+      uxXi += byXi[i] * a
+      uxEta += byEta[i] * a
+      uyXi += byXi[i] * b
+      uyEta += byEta[i] * b
+    }
+    const [x, y, xXi, yXi, xEta, yEta] = at
+    const jacobian = xXi * yEta - yXi * xEta
+    const exx = (yEta * uxXi - yXi * uxEta) / jacobian
+    const eyy = (xXi * uyEta - xEta * uyXi) / jacobian
+    const gxy = (xXi * uxEta - xEta * uxXi + yEta * uyXi - yXi * uyEta) / jacobian
+    field.set([x, y, ux, uy, d11 * exx + d12 * eyy, d12 * exx + d11 * eyy, d33 * gxy], FIELD * q)
+  }
+  return field
+}
+
+/** Amplitudes (x, y interleaved) of a triangle's shape functions, in the order of `fillTriangleShape`. */
+function amplitudesOf({ mesh, order, coefficient }: Solution, element: number): Float64Array {
+  const dofs = dofMap(mesh, order)
+  const { count, outer, inner } = triangleModes(order)
+  const sign = triangleSigns(mesh, order, count, element)
+  const dof = triangleDofs(mesh, dofs, element)
+  const amplitude = new Float64Array(2 * count)
+  outer.forEach((f, i) => {
+    amplitude[2 * f] = sign[i] * coefficient[dof[2 * i]]
+    amplitude[2 * f + 1] = sign[i] * coefficient[dof[2 * i + 1]]
+  })
+  const firstInner = dofs.outer + 2 * inner.length * element
+  inner.forEach((f, i) => {
+    amplitude[2 * f] = coefficient[firstInner + 2 * i]
+    amplitude[2 * f + 1] = coefficient[firstInner + 2 * i + 1]
+  })
+  return amplitude
+}
+
+/**
+ * Tangential stress along boundary side b at points s in [-1, 1] (in the boundary's sense, material on the left):
+ * E times the strain of the side's own displacement plus nu times the normal traction (plane stress, known traction).
+ */
+export function edgeStress({ plate, mesh, order, coefficient }: Solution, b: number, s: ArrayLike<number>): Float64Array {
+  const { curve, traction } = edgeUnder(plate, mesh, b)
+  const { dof, sign } = sideDofs(mesh, dofMap(mesh, order), b)
+  const { slope } = sideFunctions(order, s)
+  const t0 = mesh.boundary.span[2 * b]
+  const t1 = mesh.boundary.span[2 * b + 1]
+  const stress = new Float64Array(s.length)
+  for (let q = 0; q < s.length; q++) {
+    const t = t0 + ((t1 - t0) * (1 + s[q])) / 2
+    const [dx, dy] = derivativeOn(curve, t)
+    let along = 0
+    for (let i = 0; i <= order; i++) {
+      const n = sign[i] * slope[q * (order + 1) + i]
+      along += n * (coefficient[dof[i]] * dx + coefficient[dof[i] + 1] * dy)
+    }
+    // dX/ds is half of (dx, dy) (t1 - t0)
+    stress[q] = (along * 2) / ((dx * dx + dy * dy) * (t1 - t0))
+    if (!traction) continue
+    const normal = outwardNormal(curve, t)
+    const [tx, ty] = traction(pointOn(curve, t), normal)
+    stress[q] += plate.nu * (tx * normal[0] + ty * normal[1])
+  }
+  return stress
+}
+
+/** Reference points on boundary side b of its element, (xi, eta) interleaved, for s in [-1, 1] in the boundary's sense. */
+export function sideReference(mesh: Mesh, b: number, s: ArrayLike<number>): Float64Array {
+  const corner = [0, 0, 1, 0, 0, 1]
+  const from = mesh.boundary.local[b]
+  const to = (from + 1) % 3
+  const reference = new Float64Array(2 * s.length)
+  for (let q = 0; q < s.length; q++) {
+    for (let axis = 0; axis < 2; axis++) {
+      reference[2 * q + axis] = ((1 - s[q]) * corner[2 * from + axis] + (1 + s[q]) * corner[2 * to + axis]) / 2
+    }
+  }
+  return reference
+}
+
+/** Stress [sxx, syy, sxy] at a point of the plate (plate units), null outside it. Newton's method on the element's map. */
+export function stressAtPoint(solution: Solution, x: number, y: number): [number, number, number] | null {
+  const { plate, mesh } = solution
+  const bulges = bulgesOf(plate, mesh)
+  let best: { element: number; xi: number; eta: number; outside: number } | null = null
+  for (let element = 0; element < triangleCount(mesh); element++) {
+    const map = triangleMap(mesh, bulges, element)
+    if (!nearBox(map, x, y)) continue
+    const [xi, eta] = invertMap(map, x, y)
+    const outside = Math.max(-xi, -eta, xi + eta - 1)
+    if (!best || outside < best.outside) best = { element, xi, eta, outside }
+  }
+  // a point on the edge may fall outside by rounding
+  if (!best || best.outside > 1e-9) return null
+  const field = fieldIn(solution, best.element, Float64Array.of(best.xi, best.eta))
+  return [field[4], field[5], field[6]]
+}
+
+/** True when the point lies in the box of the corners, enlarged by its size (a bulge stays within it). */
+function nearBox({ corner }: TriangleMap, x: number, y: number): boolean {
+  const xs = [corner[0], corner[2], corner[4]]
+  const ys = [corner[1], corner[3], corner[5]]
+  const size = Math.max(Math.max(...xs) - Math.min(...xs), Math.max(...ys) - Math.min(...ys))
+  return (
+    x >= Math.min(...xs) - size && x <= Math.max(...xs) + size && y >= Math.min(...ys) - size && y <= Math.max(...ys) + size
+  )
+}
+
+function invertMap(map: TriangleMap, x: number, y: number): [number, number] {
+  const at = new Float64Array(6)
+  let xi = 1 / 3
+  let eta = 1 / 3
+  for (let step = 0; step < 30; step++) {
+    mapPoint(map, xi, eta, at)
+    const rx = x - at[0]
+    const ry = y - at[1]
+    const jacobian = at[2] * at[5] - at[3] * at[4]
+    if (!(Math.abs(jacobian) > 0)) return [-1, -1]
+    const dXi = (at[5] * rx - at[4] * ry) / jacobian
+    const dEta = (at[2] * ry - at[3] * rx) / jacobian
+    xi += dXi
+    eta += dEta
+    if (Math.abs(dXi) + Math.abs(dEta) < 1e-14) break
+    if (Math.abs(xi) + Math.abs(eta) > 10) return [-1, -1]
+  }
+  return [xi, eta]
+}
