@@ -118,7 +118,7 @@ function refine(plate: Plate, startPoint: number[], startSegments: readonly Segm
   let mark = new Int32Array(vertex.length / 3)
   let stamp = 0
   // the triangle that each segment bounds, and a work list of segments and triangles to look at
-  const beside: number[] = new Array(segments.length).fill(-1)
+  const beside: number[] = segments.map(() => -1)
   const suspectSegments: number[] = []
   let suspects: number[] = []
   linkNeighbours()

@@ -2,8 +2,9 @@
 // Sources sit on the boundary: on arcs (curvature), at tangent points where the curvature jumps, at corners, and wherever
 // the gap across the material to another edge is small. Lengths in plate units.
 
+import { nearestOn } from '../case/nearest.ts'
 import { derivativeOn, lengthOf, outwardNormal, pointOn, radiusOfCurvature } from '../case/plate.ts'
-import type { Arc, Curve, Edge, Plate, Point } from '../case/plate.ts'
+import type { Curve, Edge, Plate, Point } from '../case/plate.ts'
 
 /** Element size wanted at (x, y). */
 export type SizeField = (x: number, y: number) => number
@@ -138,42 +139,10 @@ function neighbours(a: number, b: number, count: number): boolean {
 
 /** Distance from a boundary point into the material to a curve that it faces (within 60 degrees of its normal), else Infinity. */
 function facingDistance([x, y]: Point, normal: Point, curve: Curve): number {
-  const [qx, qy] = nearestOn(curve, x, y)
+  const [qx, qy] = nearestOn(curve, x, y).at
   const distance = Math.hypot(qx - x, qy - y)
   const inward = -(normal[0] * (qx - x) + normal[1] * (qy - y))
   return inward > 0.5 * distance ? distance : Infinity
-}
-
-/** The point of a curve nearest to (x, y): closed form for lines and circles, sampled and refined for ellipses. */
-function nearestOn(curve: Curve, x: number, y: number): Point {
-  if (curve.kind === 'line') {
-    const [dx, dy] = derivativeOn(curve, 0)
-    const t = ((x - curve.from[0]) * dx + (y - curve.from[1]) * dy) / (dx * dx + dy * dy)
-    return pointOn(curve, Math.min(1, Math.max(0, t)))
-  }
-  if (curve.axes[0] === curve.axes[1]) return nearestOnCircle(curve, x, y)
-  let best = 0
-  let least = Infinity
-  for (let width = 1 / 32, from = 0, to = 1, round = 0; round < 4; round++, width /= 16) {
-    for (let t = from; t <= to + width / 2; t += width) {
-      const [px, py] = pointOn(curve, Math.min(t, 1))
-      const distance = Math.hypot(px - x, py - y)
-      if (distance < least) [least, best] = [distance, Math.min(t, 1)]
-    }
-    from = Math.max(0, best - width)
-    to = Math.min(1, best + width)
-  }
-  return pointOn(curve, best)
-}
-
-function nearestOnCircle(curve: Arc, x: number, y: number): Point {
-  const phi = Math.atan2(y - curve.centre[1], x - curve.centre[0]) - curve.tilt
-  const turn = 2 * Math.PI
-  // parameter of phi, counted in the arc's own sense from its start
-  const ahead = (((phi - curve.start) * Math.sign(curve.sweep)) % turn + turn) % turn
-  if (ahead <= Math.abs(curve.sweep)) return pointOn(curve, ahead / Math.abs(curve.sweep))
-  const { from, to } = curve
-  return Math.hypot(from[0] - x, from[1] - y) <= Math.hypot(to[0] - x, to[1] - y) ? from : to
 }
 
 /** The sources that no other source already covers: smallest first, each kept only if it still lowers the field. */

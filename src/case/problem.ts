@@ -1,0 +1,40 @@
+// What is wrong with a case: a list of problems, each with the field, its place in the file, and what would be right.
+
+/** Where in the case: keys and list positions (from 0), e.g. ['holes', 1, 'diameter']. */
+export type FieldPath = readonly (string | number)[]
+
+export interface Problem {
+  /** Stable name of the kind of problem, for programs: 'type', 'unknown-key', 'overlap', ... */
+  readonly code: string
+  readonly path: FieldPath
+  /** The path as a reader counts: lists from 1, what has an id called by it; '' for the file itself. */
+  readonly field: string
+  /** "expected WHAT (UNIT), got VALUE", and the remedy where there is exactly one. */
+  readonly message: string
+  /** Counted from 1; 0 for the file itself. */
+  readonly line: number
+  readonly column: number
+}
+
+/** A case that is refused, with all its problems in file order. */
+export class CaseError extends Error {
+  override name = 'CaseError'
+  constructor(
+    readonly file: string,
+    readonly problems: readonly Problem[]
+  ) {
+    super(problems.map(({ field, message }) => (field ? `${field}: ${message}` : message)).join('; '))
+  }
+}
+
+/** The problems as text: one on a line of its own, several under a heading, in columns. */
+export function formatProblems({ file, problems }: CaseError): string {
+  const place = ({ line, column }: Problem) => (line > 0 ? `${line}:${column}` : '')
+  const sentence = ({ field, message }: Problem) => (field ? `${field}: ${message}` : message)
+  if (problems.length === 1) {
+    const [only] = problems
+    return `${[file, place(only)].filter(Boolean).join(':')}${only.field ? ' ' : ': '}${sentence(only)}`
+  }
+  const width = Math.max(...problems.map((problem) => place(problem).length))
+  return [`${file}: ${problems.length} problems`, ...problems.map((problem) => `  ${place(problem).padEnd(width)}  ${sentence(problem)}`)].join('\n')
+}

@@ -1,0 +1,197 @@
+// Text to checked case: YAML 1.2 (and so JSON), the schema, and what this version can solve; every complaint with its place.
+
+import { LineCounter, parseDocument, type Document } from 'yaml'
+import type { z } from 'zod'
+import { CaseError, type FieldPath } from './problem.ts'
+import { isRecord, LOAD_BRANCHES, PLATE_BRANCHES, schemaFor, type CaseFile, type PlateCase } from './schema.ts'
+import { placeFindings, rememberSource, type Finding, type Source } from './source.ts'
+import { nearestWord } from './spelling.ts'
+import { STRESS_UNITS } from './units.ts'
+import { findUnsupported } from './unsupported.ts'
+
+/** Largest case file, bytes: the parser's time grows steeply beyond. */
+const MOST_BYTES = 128 * 1024
+/** Uses of one YAML alias; more are a bomb, not a case. */
+const MOST_ALIASES = 100
+/** Default modulus, MPa. */
+const DEFAULT_E = 200_000
+
+/**
+ * The case written in `text`; `file` names it in problems.
+ * @throws CaseError with every problem found
+ */
+export function readCase(text: string, file: string): PlateCase {
+  const source = parseText(text, file)
+  const refuse = (findings: readonly Finding[]): never => {
+    throw new CaseError(file, placeFindings(findings, source))
+  }
+  if (!isRecord(source.raw)) return refuse([{ code: 'type', path: [], message: `expected a case (name, plate, load, ...), got ${show(source.raw)}` }])
+  const parsed = schemaFor(source.raw).safeParse(source.raw, { error: describeIssue })
+  if (!parsed.success) return refuse(parsed.error.issues.flatMap((issue) => findingsOf(issue, source.raw)))
+  const unsupported = findUnsupported(parsed.data)
+  if (unsupported.length > 0) return refuse(unsupported)
+  const plateCase = completeCase(parsed.data)
+  const findings = findInconsistencies(parsed.data, plateCase)
+  if (findings.length > 0) return refuse(findings)
+  return rememberSource(plateCase, source)
+}
+
+function parseText(text: string, file: string): Source {
+  const whole = (code: string, message: string) =>
+    new CaseError(file, [{ code, path: [], field: '', message, line: 0, column: 0 }])
+  if (text.length > MOST_BYTES) throw whole('too-large', `expected at most 128 kB, got ${Math.ceil(text.length / 1024)} kB`)
+  // oxlint-disable-next-line no-control-regex -- a control character is what a binary file gives away
+  if (/[\u0000-\u0008\u000e-\u001f\ufffd]/.test(text)) throw whole('binary', 'expected text (YAML or JSON, UTF-8), got a binary file')
+  const lines = new LineCounter()
+  const document = parseDocument(text, { lineCounter: lines, version: '1.2', prettyErrors: false, logLevel: 'silent' })
+  const place = (offset: number) => {
+    const { line, col } = lines.linePos(offset)
+    return { line: Math.max(1, line), column: Math.max(1, col) }
+  }
+  if (document.errors.length > 0) {
+    throw new CaseError(
+      file,
+      document.errors.map(({ code, message, pos }) => ({
+        code: 'yaml',
+        path: [],
+        field: '',
+        message: YAML_PROBLEMS[code] ?? `expected YAML 1.2 or JSON, got: ${message.split('\n')[0]}`,
+        ...place(pos[0])
+      }))
+    )
+  }
+  try {
+    const raw: unknown = document.toJS({ maxAliasCount: MOST_ALIASES })
+    return { file, raw, locate: (path) => place(offsetOf(document, path)) }
+  } catch (error) {
+    if (error instanceof ReferenceError) throw whole('aliases', `expected at most ${MOST_ALIASES} uses of aliases, got more (or an alias without its anchor)`)
+    throw error
+  }
+}
+
+const YAML_PROBLEMS: Record<string, string> = {
+  DUPLICATE_KEY: 'expected each key once, got it twice',
+  MULTIPLE_DOCS: 'expected one case a file, got a second document ("---")',
+  TAB_AS_INDENT: 'expected spaces for indentation, got a tab'
+}
+
+/** Where a field begins in the text: the node at its path, or the nearest one around it. */
+function offsetOf(document: Document, path: FieldPath): number {
+  for (let length = path.length; length > 0; length--) {
+    const node = document.getIn(path.slice(0, length), true)
+    const range = typeof node === 'object' && node !== null && 'range' in node ? (node.range as [number] | null) : null
+    if (range) return range[0]
+  }
+  return 0
+}
+
+/** What would be right, for the issues whose schema does not say it itself. */
+function describeIssue(issue: z.core.$ZodRawIssue): string {
+  if (issue.code === 'unrecognized_keys') return keysOfSchema(issue.inst).join(', ')
+  if (issue.code === 'invalid_type' && issue.expected === 'object') {
+    const keys = keysOfSchema(issue.inst)
+    return keys.length > 0 ? `{ ${keys.join(', ')} }` : 'a group of keys'
+  }
+  return 'another value'
+}
+
+function keysOfSchema(schema: unknown): string[] {
+  const def = (schema as { _zod?: { def?: { shape?: object } } } | undefined)?._zod?.def
+  return def?.shape ? Object.keys(def.shape).filter((key) => key !== '$schema') : []
+}
+
+function findingsOf(issue: z.core.$ZodIssue, raw: unknown): Finding[] {
+  const path = issue.path as (string | number)[]
+  if (issue.code === 'unrecognized_keys') {
+    return issue.keys.map((key) => {
+      const allowed = allowedKeys(path, issue.message.split(', '))
+      const near = nearestWord(key, allowed)
+      const hint = near ? ` (did you mean "${near}"?)` : ''
+      return { code: 'unknown-key', path: [...path, key], message: `expected ${listOf(allowed)}, got "${key}"${hint}` }
+    })
+  }
+  return [{ code: issue.code === 'custom' ? 'value' : 'type', path, message: `expected ${inUnits(issue.message, raw)}, got ${show(valueAt(raw, path))}` }]
+}
+
+/** A misspelt key of `plate` or `load` may have been meant for any of their branches. */
+function allowedKeys(path: FieldPath, own: string[]): string[] {
+  const all = (branches: object) => [...new Set(Object.values(branches).flatMap(keysOfSchema))]
+  if (path.length === 1 && path[0] === 'load') return all(LOAD_BRANCHES)
+  if (path.length === 1 && path[0] === 'plate') return all(PLATE_BRANCHES)
+  return own
+}
+
+function listOf(words: readonly string[]): string {
+  return words.length < 2 ? words.join('') : `${words.slice(0, -1).join(', ')} or ${words[words.length - 1]}`
+}
+
+function inUnits(message: string, raw: unknown): string {
+  const units = isRecord(raw) && isRecord(raw.units) ? raw.units : {}
+  const unit = (kind: string, otherwise: string) => (typeof units[kind] === 'string' ? units[kind] : otherwise)
+  return message
+    .replaceAll('{length}', unit('length', 'mm'))
+    .replaceAll('{force}', unit('force', 'N'))
+    .replaceAll('{stress}', unit('stress', 'MPa'))
+}
+
+function valueAt(raw: unknown, path: FieldPath): unknown {
+  let at = raw
+  for (const key of path) {
+    if (typeof at !== 'object' || at === null || !Object.hasOwn(at, key)) return undefined
+    at = (at as Record<string | number, unknown>)[key]
+  }
+  return at
+}
+
+/** A value in a sentence. */
+function show(value: unknown): string {
+  if (value === undefined || value === null) return 'nothing'
+  if (Array.isArray(value)) return `a list of ${value.length}`
+  if (typeof value === 'object') return `{ ${Object.keys(value).slice(0, 4).join(', ')}${Object.keys(value).length > 4 ? ', ...' : ''} }`
+  if (typeof value === 'string') return `"${value.length > 40 ? `${value.slice(0, 37)}...` : value}"`
+  return String(value)
+}
+
+/** The case with its defaults: ids by position, E of 200 GPa in the case's stress unit. */
+function completeCase(file: CaseFile): PlateCase {
+  const { material, units } = file
+  return {
+    name: file.name,
+    units,
+    thickness: file.thickness ?? 0,
+    material: { E: material.E ?? DEFAULT_E / STRESS_UNITS[units.stress], nu: material.nu, yield: material.yield ?? null },
+    plate: file.plate as PlateCase['plate'],
+    holes: file.holes.map((hole, i) => ({ ...hole, id: hole.id ?? `hole-${i + 1}` })) as unknown as PlateCase['holes'],
+    notches: file.notches.map((notch, i) => ({ ...notch, id: notch.id ?? `notch-${i + 1}` })),
+    load: file.load as PlateCase['load'],
+    tolerance: file.tolerance,
+    expect: file.expect ?? []
+  }
+}
+
+/** What no single field shows: a thickness that is missing, ids used twice, radii for the wrong number of steps, no load at all. */
+function findInconsistencies(file: CaseFile, { plate, holes, notches, load, expect }: PlateCase): Finding[] {
+  const findings: Finding[] = []
+  const steps = plate.sections.length - 1
+  if (file.thickness === undefined) {
+    findings.push({ code: 'missing', path: ['thickness'], message: `expected a length > 0 (${file.units.length}), got nothing: a force or a moment needs a thickness to become a stress` })
+  }
+  if (plate.fillets.length !== steps) {
+    findings.push({ code: 'count', path: ['plate', 'fillets'], message: `expected ${steps} ${steps === 1 ? 'radius' : 'radii'}, one a step between sections, got ${plate.fillets.length}` })
+  }
+  if (load.axial === 0 && load.moment === 0) findings.push({ code: 'no-load', path: ['load'], message: 'expected an axial force or a moment other than 0, got none' })
+  const seen = new Map<string, string>(plate.sections.slice(1).map((_, i) => [`shoulder-${i + 1}`, 'a shoulder']))
+  const named = [...holes.map(({ id }, i) => ({ id, list: 'holes', i })), ...notches.map(({ id }, i) => ({ id, list: 'notches', i }))]
+  for (const { id, list, i } of named) {
+    const other = seen.get(id)
+    if (other) findings.push({ code: 'repeated-id', path: [list, i, 'id'], message: `expected a name of its own, got "${id}", which ${other} has too` })
+    seen.set(id, `${list}[${i + 1}]`)
+  }
+  expect.forEach(({ raiser }, i) => {
+    if (raiser === undefined || seen.has(raiser)) return
+    const near = nearestWord(raiser, [...seen.keys()])
+    const hint = near ? ` (did you mean "${near}"?)` : ''
+    findings.push({ code: 'unknown-raiser', path: ['expect', i, 'raiser'], message: `expected the id of a stress raiser, got "${raiser}"${hint}` })
+  })
+  return findings
+}

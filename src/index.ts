@@ -1,0 +1,16 @@
+// The library's public face: everything that the commands do, a program can do.
+
+export { readCase } from './case/read.ts'
+export { CaseError, formatProblems, type Problem } from './case/problem.ts'
+export { caseJsonSchema, type PlateCase } from './case/schema.ts'
+export { buildPlate } from './case/build.ts'
+export type { Arc, Bar, Curve, Edge, Line, Loop, Plate, Point, Raiser } from './case/plate.ts'
+export type { Mesh } from './mesh/mesh.ts'
+export { stressAtPoint, type Solution } from './solve/field.ts'
+export { verify, type Verification, type VerifyOptions } from './verify.ts'
+export { nominalStress } from './post/nominal.ts'
+export type { Checks, Kt, MeshFigures, Nominal, Peak, RaiserVerdict, Step, Verdict } from './post/verdict.ts'
+export { CAUTIONS, reportText, type ReportOptions } from './post/report.ts'
+export { renderFigure } from './post/draw/figure.ts'
+export { checkExpectations, type Row } from './regress.ts'
+export { VERSION } from './version.ts'

@@ -1,0 +1,53 @@
+// The error bar of a raiser's peak: what the sequence of orders and the refined mesh say, and at the peak itself the stress left
+// over on the free edge, which is zero in truth.
+//
+// With K(m, p) the peak on mesh m at order p, m the finer mesh: |K(m, p) - K(m - 1, p)| is about the error of the coarser mesh,
+// several times that of the finer one; |K(m, p) - K(m, p - 1)| is about the error of the lower order. Either can be small by
+// chance where a sequence crosses the truth; the stress left over on the free edge then still shows how far the field is from it.
+
+/** What one solve says about a raiser; magnitudes in plate stress units. */
+export interface Evidence {
+  /** Mesh, counted from 1, each finer than the one before. */
+  readonly mesh: number
+  readonly order: number
+  /** |peak|. */
+  readonly peak: number
+  /** Largest |normal or shear stress| on the free sides at the peak. */
+  readonly leftOver: number
+}
+
+/** Which part of the evidence set the bar. */
+export type BarSource = 'mesh' | 'order' | 'free edge' | 'rounding'
+
+export interface Bar {
+  /** Half-width, in the unit of the peaks. */
+  readonly error: number
+  readonly source: BarSource
+}
+
+/** Share of the stress left over that counts: over many plates it exceeds the error of the peak by this or more. */
+const LEFT_OVER_SHARE = 0.2
+/** Orders 1 and 2 converge like the element size or its square: the finer mesh still has most of the coarser one's error. */
+const LOW_ORDER_FACTOR = 2
+/** Relative error that rounding may leave in a peak. */
+const ROUNDING = 1e-10
+
+/**
+ * The bar of the last solve in `evidence`, Infinity while there is nothing to compare it with.
+ * The last solve is compared with the same order on the mesh before and with the next lower order on its own mesh.
+ */
+export function errorBar(evidence: readonly Evidence[]): Bar {
+  const last = evidence[evidence.length - 1]
+  const same = (mesh: number, order: number) => evidence.findLast((e) => e.mesh === mesh && e.order === order)
+  const coarser = same(last.mesh - 1, last.order)
+  const lower = same(last.mesh, last.order - 1)
+  if (!coarser) return { error: Infinity, source: 'mesh' }
+  const factor = last.order <= 2 ? LOW_ORDER_FACTOR : 1
+  const candidates: Bar[] = [
+    { error: ROUNDING * last.peak, source: 'rounding' },
+    { error: LEFT_OVER_SHARE * last.leftOver, source: 'free edge' },
+    { error: factor * Math.abs(last.peak - coarser.peak), source: 'mesh' }
+  ]
+  if (lower) candidates.push({ error: factor * Math.abs(last.peak - lower.peak), source: 'order' })
+  return candidates.reduce((widest, bar) => (bar.error > widest.error ? bar : widest))
+}

@@ -1,0 +1,101 @@
+// The warnings of a verdict: what the numbers do not say by themselves.
+
+import { lengthOf, type Bar, type Plate, type Raiser } from '../case/plate.ts'
+import { percent, plainNumber } from './format.ts'
+import { foremost, sidePeaks, type EdgePeak } from './peak.ts'
+import { boundarySidesOf } from './pass.ts'
+import type { RaiserVerdict } from './verdict.ts'
+import { whereOnEdge } from './where.ts'
+import type { Verdict } from './verdict.ts'
+import type { Solution } from '../solve/field.ts'
+
+/** The stress elsewhere must exceed the governing peak by this much, relative, to be worth a word: it may be its own edge's end. */
+const WORTH_A_WORD = 0.002
+
+/** Raisers whose net section is eccentric while a force runs through it: the plain P/A leaves its bending out. */
+export function eccentricWarnings(raisers: readonly RaiserVerdict[]): string[] {
+  return raisers
+    .filter(({ nominal, kt }) => nominal && kt && nominal.flexure !== null && kt.flexure !== null)
+    .map(
+      ({ id, kt, nominal }) =>
+        `${id}: the net section is off the line of the load; the bending that this adds is in Kt ${plainNumber(kt!.net, 4)} ` +
+        `(on plain P/A), not in its nominal stress. With it the nominal is ${plainNumber(nominal!.flexure!, 4)} and Kt ${plainNumber(kt!.flexure!, 4)}.`
+    )
+}
+
+/** A word where the largest edge stress of the plate is on no raiser; a place near a sharp corner does not count. */
+export function elsewhereWarning(
+  solution: Solution,
+  governing: { id: string; stress: number; error: number } | null,
+  units: Verdict['units'],
+  toUnit: number
+): string[] {
+  const { plate, mesh } = solution
+  const peaks = sidePeaks(solution, boundarySidesOf(plate, mesh, -1)).filter(({ at }) => !nearSharpCorner(plate, at))
+  if (peaks.length === 0) return []
+  const top: EdgePeak = foremost(peaks, 1e-9)
+  const stress = top.stress * toUnit
+  if (governing && Math.abs(stress) <= (Math.abs(governing.stress) + governing.error) * (1 + WORTH_A_WORD)) return []
+  const place = whereOnEdge(plate, top.loop, top.edge, top.t, units)
+  const compared = governing ? `, above the peak of ${governing.id} (${plainNumber(governing.stress, 4)} ${units.stress})` : ''
+  return [`the largest stress of the plate, ${plainNumber(stress, 4)} ${units.stress}, is at no stress raiser: ${place}${compared}`]
+}
+
+/** Within the length of the shorter edge at a sharp corner the singular stress has no bound, so its size says nothing. */
+function nearSharpCorner(plate: Plate, [x, y]: readonly [number, number]): boolean {
+  return plate.sharpCorners.some(({ at }) => {
+    const reach = plate.loops
+      .flat()
+      .filter(({ curve }) => [curve.from, curve.to].some((end) => end[0] === at[0] && end[1] === at[1]))
+      .reduce((shortest, { curve }) => Math.min(shortest, lengthOf(curve)), Infinity)
+    return Math.hypot(x - at[0], y - at[1]) < reach
+  })
+}
+
+/** Raisers nearer to a loaded end than the width of its section: the uniform end traction as drawn is then part of the answer. */
+export function nearEndWarnings(plate: Plate): string[] {
+  const { bar } = plate
+  if (!bar) return []
+  const last = bar.sections[bar.sections.length - 1]
+  return plate.raisers.flatMap((raiser) => {
+    const extent = extentAlong(raiser, bar)
+    if (!extent) return []
+    const near: string[] = []
+    if (extent[0] - bar.sections[0].x0 < bar.sections[0].width) near.push('left')
+    if (last.x1 - extent[1] < last.width) near.push('right')
+    if (near.length === 0) return []
+    const ends = near.length === 2 ? 'both loaded ends' : `the ${near[0]} loaded end`
+    return [
+      `${raiser.id}: nearer to ${ends} than one section width; the result holds for the ends as drawn (uniform and linear traction), not for a long bar`
+    ]
+  })
+}
+
+function extentAlong(raiser: Raiser, { sections }: Bar): [number, number] | null {
+  if (raiser.kind === 'hole') return [raiser.box[0], raiser.box[2]]
+  if (raiser.kind === 'notch') return [raiser.x, raiser.x]
+  if (raiser.kind === 'shoulder') return [sections[raiser.step].x1, sections[raiser.step].x1]
+  return null
+}
+
+/** Raisers whose peak exceeds the yield stress: there the linear answer ends. */
+export function yieldWarnings(raisers: readonly RaiserVerdict[], yieldStress: number | null, unit: string): string[] {
+  if (yieldStress === null) return []
+  return raisers
+    .filter(({ peak }) => peak && Math.abs(peak.stress) > yieldStress)
+    .map(
+      ({ id, peak }) =>
+        `${id}: the peak is ${plainNumber(Math.abs(peak!.stress) / yieldStress, 3)} times the yield stress of ${plainNumber(yieldStress, 4)} ${unit}; ` +
+        'the linear elastic answer ends there (Kt stays what it is, the stress does not)'
+    )
+}
+
+/** Raisers whose bar is wider than the tolerance. */
+export function unsettledWarnings(raisers: readonly RaiserVerdict[], unsettled: readonly string[], tolerance: number): string[] {
+  return raisers
+    .filter(({ id, peak }) => peak && unsettled.includes(id))
+    .map(
+      ({ id, peak }) =>
+        `${id}: not settled to ${percent(tolerance)}; the bar is ${percent(peak!.error / Math.abs(peak!.stress))} of the peak`
+    )
+}
