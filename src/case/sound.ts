@@ -1,8 +1,9 @@
 // What cannot be, found before any mesh: features outside the plate or over one another, fillets and notches that do not fit,
 // ligaments too thin to be solved.
 
-import { outlineOf, sideOfBar, type PlateNumbers } from './build.ts'
+import { outlineOf, sideOfBar } from './bar.ts'
 import { gapBetween, isInside, nearestOn } from './nearest.ts'
+import type { PlateNumbers } from './numbers.ts'
 import type { Edge, Loop, Point } from './plate.ts'
 import { freeStretches, mouthHalfWidth, NO_LENGTH } from './profile.ts'
 import type { PlateCase } from './schema.ts'

@@ -1,7 +1,7 @@
 // The words and the table that `verify` prints for one case. Fits 80 columns; its prose is wrapped there.
 
 import { decimalsFor, fixed, percent, plainNumber, withBar } from './format.ts'
-import { COLUMNS, wrap } from './wrap.ts'
+import { COLUMNS, GLUE, wrap } from './wrap.ts'
 import type { RaiserVerdict, Verdict } from './verdict.ts'
 
 /** What the numbers are and are not; printed under every table and in the command's help. */
@@ -107,8 +107,11 @@ function alignBarred(cells: ({ value: string; bar: string } | null)[]): string[]
 function governingSentence({ governing, margin, raisers }: Verdict): string {
   if (governing === null) return raisers.length === 0 ? '' : 'No raiser has a finite peak stress.'
   if (margin === null) return `${governing} governs: no other raiser has a finite peak stress.`
-  if (margin === 0) return `${governing} governs in a tie: the next raiser's peak is the same within the error bars.`
-  return `${governing} governs: its peak is ${percent(margin)} above that of the next raiser.`
+  const magnitude = ({ peak }: RaiserVerdict) => Math.abs(peak?.stress ?? 0)
+  const next = raisers.filter(({ id }) => id !== governing).reduce((a, b) => (magnitude(b) > magnitude(a) ? b : a)).id
+  if (margin === 0) return `${governing} governs in a tie: the peak of ${next} is the same within the error bars.`
+  const lead = margin < 1 ? `${percent(margin)} above` : `${plainNumber(1 + margin, 2)} times`
+  return `${governing} governs: its peak is ${lead} that of ${next}.`
 }
 
 /** Where its peak sits, its nominal stress or why it has none, and on request its history. */
@@ -119,9 +122,9 @@ function raiserLines(verdict: Verdict, raiser: RaiserVerdict, verbose: boolean):
   const add = (text: string) => lines.push(...wrap(text, '    ', '  '))
   if (peak) add(`peak ${peak.where}`)
   if (kt === null && why) add(peak ? `no Kt: ${why}` : why)
-  if (nominal) {
-    add(`net nominal ${nominal.how} = ${plainNumber(nominal.net, 4)} ${stress}; gross ${plainNumber(nominal.gross, 4)} ${stress}`)
-    if (nominal.flexure !== null && kt?.flexure != null) {
+  if (nominal && kt) {
+    add(`net nominal ${glueTerms(nominal.how)} = ${plainNumber(nominal.net, 4)} ${stress}; gross ${plainNumber(nominal.gross, 4)} ${stress}`)
+    if (nominal.flexure !== null && kt.flexure !== null) {
       add(
         `with the bending of the eccentric section ${plainNumber(nominal.flexure, 4)} ${stress}: ` +
         `Kt ${fixed(kt.flexure, decimalsFor(kt.flexure, (kt.error * kt.flexure) / kt.net))}`
@@ -146,6 +149,19 @@ function historyTable({ history, kt }: RaiserVerdict): string[] {
   const table = [['mesh', 'order', 'unknowns', kt ? 'Kt net' : 'peak', 'change'], ...rows]
   const widths = table[0].map((_, column) => Math.max(...table.map((row) => row[column].length)))
   return table.map((row) => row.map((cell, column) => cell.padStart(widths[column])).join('  ').trimEnd())
+}
+
+/** A formula that can be broken only before an =, + or − that stands outside brackets. */
+function glueTerms(formula: string): string {
+  let depth = 0
+  let glued = ''
+  for (let k = 0; k < formula.length; k++) {
+    if (formula[k] === '(') depth++
+    if (formula[k] === ')') depth--
+    const mayBreak = depth === 0 && /[=+−]/.test(formula[k + 1] ?? '') && formula[k + 2] === ' '
+    glued += formula[k] === ' ' && !mayBreak ? GLUE : formula[k]
+  }
+  return glued
 }
 
 function changeText(change: number): string {

@@ -57,7 +57,7 @@ describe('verify', () => {
   it('refuses a bad file with its place, still solves the others, and returns 2', async () => {
     const { status, out, err } = await run(['verify', 'wrong.yaml', 'strip.yaml'], { 'wrong.yaml': WRONG, 'strip.yaml': STRIP })
     expect(status).toBe(2)
-    expect(err).toMatch(/^wrong\.yaml:5:9 /)
+    expect(err).toMatch(/^wrong\.yaml:5:\d+ load\.axail: expected axial, moment/)
     expect(err).toContain('did you mean "axial"?')
     expect(out).toContain('> bore')
   })
@@ -139,14 +139,6 @@ describe('regress', () => {
     const { status, out } = await run(['regress', 'c'], { 'c/strip.yaml': STRIP + EXPECT.replace('0.7%', '0.5%') })
     expect(status).toBe(1)
     expect(out).toMatch(/^FAIL .*: outside the band\n0 passed, 1 failed\n$/)
-  })
-
-  it('fails where the error bar is too wide for the band', async () => {
-    const tight = STRIP.replace('load', 'tolerance: 5%\nload') +
-      'expect: [{ raiser: bore, kt: 2.1738, within: 1e-7, source: "independent calculation", from: computed }]\n'
-    const { status, out } = await run(['regress', 'c'], { 'c/strip.yaml': tight })
-    expect(status).toBe(1)
-    expect(out).toMatch(/outside the band|wider than a third/)
   })
 
   it('counts a refused file as failed, and 2 wins', async () => {

@@ -91,8 +91,15 @@ describe('the words', () => {
     expect(text).toContain('shoulder-2\n  a sharp re-entrant corner has no finite Kt\n')
   })
 
+  it('break a long formula between its terms only', () => {
+    const how = 'P / (t d) − 6 M / (t d²) = 42000 / (12 × 66) − 6 × (−180000) / (12 × 66²)'
+    const text = reportText({ ...verdict, raisers: [{ ...relief, nominal: { ...relief.nominal!, how } }], margin: null }, plain)
+    expect(text).toContain('  net nominal P / (t d) − 6 M / (t d²) = 42000 / (12 × 66)\n    − 6 × (−180000) / (12 × 66²) = 68.18 MPa')
+  })
+
   it('name the governing raiser with its margin, and a tie', () => {
-    expect(reportText(verdict, plain)).toContain('relief governs: its peak is 14 % above that of the next raiser.')
+    expect(reportText(verdict, plain)).toContain('relief governs: its peak is 14 % above that of shoulder-1.')
+    expect(reportText({ ...verdict, margin: 1.1 }, plain)).toContain('its peak is 2.1 times that of shoulder-1.')
     expect(reportText({ ...verdict, margin: 0 }, plain)).toContain('in a tie')
     expect(reportText({ ...verdict, margin: null }, plain)).toContain('no other raiser has a finite peak')
   })
