@@ -12,7 +12,7 @@ export default defineConfig({
     outDir: 'dist',
     sourcemap: true,
     rollupOptions: {
-      input: { cli: 'src/cli.ts', index: 'src/index.ts' },
+      input: { cli: 'src/cli.ts', index: 'src/index.ts', bench: 'src/bench.ts' },
       output: { entryFileNames: '[name].js', chunkFileNames: 'part/[name]-[hash].js' }
     }
   },

@@ -39,7 +39,7 @@ export function checkMesh(plate: Plate, mesh: Mesh): MeshQuality {
   const euler = nodeCount(mesh) - sideCount(mesh) + triangleCount(mesh)
   if (euler !== 1 - holes) throw new MeshError(`nodes - sides + elements is ${euler}, not ${1 - holes}`)
 
-  const bulges = bulgesOf(plate, mesh)
+  const bulges = bulgesOf(plate, mesh, Infinity)
   const rule = gaussLegendre(SIDE_NODES)
   let area = 0
   let smallestAngle = 180

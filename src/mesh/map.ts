@@ -2,8 +2,10 @@
 // Blending of W.J. Gordon, C.A. Hall, Numer. Math. 21 (1973) 109, in the smooth form for triangles of B. Szabo, I. Babuska,
 // Finite Element Analysis, 1991, ch. 6: X = sum Li Vi + sum over sides La Lb bulge(Lb - La),
 // where La Lb bulge(s) = curve(s) - chord(s) on the side itself, so bulge(s) = 4 (curve(s) - chord(s)) / (1 - s^2).
+// Shape functions of order 1 and 2 cannot turn an exactly curved element without straining it: there the side is the chord, or the
+// parabola through the arc's middle, which is the plain isoparametric element.
 
-import type { Curve, Plate } from '../case/plate.ts'
+import { derivativeOn, pointOn, type Curve, type Plate, type Point } from '../case/plate.ts'
 import { edgeUnder, type Mesh } from './mesh.ts'
 
 /** Coefficients of the bulge as a polynomial in s, (x, y) interleaved, ascending powers. */
@@ -12,14 +14,18 @@ export type Bulge = Float64Array
 /** Powers kept: the series' last term is below 1e-17 for a half-angle of 0.8 (an element on a quarter circle). */
 const TERMS = 10
 
+/** Lowest order whose elements follow arcs exactly. */
+const EXACT_FROM = 3
+
 /**
- * Bulge of the part t0 .. t1 of an arc, null for a line. With U, V the arc's conjugate radii at the middle of the part and
+ * Bulge of the part t0 .. t1 of an arc for elements of an order, null where the side is straight. With U, V the arc's conjugate radii at the middle of the part and
  * alpha its half-angle, curve - chord = U (cos(alpha s) - cos alpha) + V (sin(alpha s) - s sin alpha); both brackets are
  * divided by 1 - s^2 term by term in their Taylor series, so nothing cancels at the ends.
  * @throws RangeError when the part sweeps more than 120 degrees (the series would be cut too early)
  */
-export function bulgeOf(curve: Curve, t0: number, t1: number): Bulge | null {
-  if (curve.kind === 'line') return null
+export function bulgeOf(curve: Curve, t0: number, t1: number, order: number): Bulge | null {
+  if (curve.kind === 'line' || order < 2) return null
+  if (order < EXACT_FROM) return parabola(curve, t0, t1)
   const middle = curve.start + (curve.sweep * (t0 + t1)) / 2
   const alpha = (curve.sweep * (t1 - t0)) / 2
   if (Math.abs(alpha) > Math.PI / 3) throw new RangeError(`a curved side sweeps ${2 * alpha} rad`)
@@ -47,16 +53,39 @@ export function bulgeOf(curve: Curve, t0: number, t1: number): Bulge | null {
   return bulge
 }
 
+/** The bulge, constant, of the parabola through the ends and the middle of a part of a curve. */
+function parabola(curve: Curve, t0: number, t1: number): Bulge {
+  const [x0, y0] = pointOn(curve, t0)
+  const [x1, y1] = pointOn(curve, t1)
+  const [x, y] = pointOn(curve, (t0 + t1) / 2)
+  const bulge = new Float64Array(4 * TERMS)
+  bulge[0] = 4 * x - 2 * (x0 + x1)
+  bulge[1] = 4 * y - 2 * (y0 + y1)
+  return bulge
+}
+
+/** dX/ds of a side on the part t0 .. t1 of a curve, at s in [-1, 1], as elements of the order have it. */
+export function sideTangent(curve: Curve, t0: number, t1: number, order: number, s: number): Point {
+  if (curve.kind === 'line' || order >= EXACT_FROM) {
+    const [dx, dy] = derivativeOn(curve, t0 + ((t1 - t0) * (1 + s)) / 2)
+    return [(dx * (t1 - t0)) / 2, (dy * (t1 - t0)) / 2]
+  }
+  const [x0, y0] = pointOn(curve, t0)
+  const [x1, y1] = pointOn(curve, t1)
+  const bulge = order < 2 ? [0, 0] : parabola(curve, t0, t1)
+  return [(x1 - x0 - s * bulge[0]) / 2, (y1 - y0 - s * bulge[1]) / 2]
+}
+
 function factorial(n: number): number {
   let product = 1
   for (let k = 2; k <= n; k++) product *= k
   return product
 }
 
-/** The bulge of each boundary side of a mesh, in the order of `mesh.boundary`; null where it lies on a line. */
-export function bulgesOf(plate: Plate, mesh: Mesh): (Bulge | null)[] {
+/** The bulge of each boundary side of a mesh, in the order of `mesh.boundary`, for elements of an order; null for straight ones. */
+export function bulgesOf(plate: Plate, mesh: Mesh, order: number): (Bulge | null)[] {
   const { count, span } = mesh.boundary
-  return Array.from({ length: count }, (_, b) => bulgeOf(edgeUnder(plate, mesh, b).curve, span[2 * b], span[2 * b + 1]))
+  return Array.from({ length: count }, (_, b) => bulgeOf(edgeUnder(plate, mesh, b).curve, span[2 * b], span[2 * b + 1], order))
 }
 
 /** The map of one triangle: its corners and the bulges of its three sides. */

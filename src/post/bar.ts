@@ -27,7 +27,10 @@ export interface Bar {
 
 /** Share of the stress left over that counts: over many plates it exceeds the error of the peak by this or more. */
 const LEFT_OVER_SHARE = 0.2
-/** Orders 1 and 2 converge like the element size or its square: the finer mesh still has most of the coarser one's error. */
+/**
+ * Orders 1 and 2 converge like the element size or its square: the finer mesh still has most of the coarser one's error, and the
+ * order below says nothing.
+ */
 const LOW_ORDER_FACTOR = 2
 /** Relative error that rounding may leave in a peak. */
 const ROUNDING = 1e-10
@@ -42,12 +45,12 @@ export function errorBar(evidence: readonly Evidence[]): Bar {
   const coarser = same(last.mesh - 1, last.order)
   const lower = same(last.mesh, last.order - 1)
   if (!coarser) return { error: Infinity, source: 'mesh' }
-  const factor = last.order <= 2 ? LOW_ORDER_FACTOR : 1
+  const low = last.order <= 2
   const candidates: Bar[] = [
     { error: ROUNDING * last.peak, source: 'rounding' },
     { error: LEFT_OVER_SHARE * last.leftOver, source: 'free edge' },
-    { error: factor * Math.abs(last.peak - coarser.peak), source: 'mesh' }
+    { error: (low ? LOW_ORDER_FACTOR : 1) * Math.abs(last.peak - coarser.peak), source: 'mesh' }
   ]
-  if (lower) candidates.push({ error: factor * Math.abs(last.peak - lower.peak), source: 'order' })
+  if (lower && !low) candidates.push({ error: Math.abs(last.peak - lower.peak), source: 'order' })
   return candidates.reduce((widest, bar) => (bar.error > widest.error ? bar : widest))
 }

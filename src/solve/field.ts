@@ -1,7 +1,7 @@
 // Displacement and stress anywhere in the plate, from the elements' own shape functions.
 
-import { derivativeOn, outwardNormal, pointOn, type Plate } from '../case/plate.ts'
-import { bulgesOf, mapPoint, triangleMap, type TriangleMap } from '../mesh/map.ts'
+import { outwardNormal, pointOn, type Plate } from '../case/plate.ts'
+import { bulgesOf, mapPoint, sideTangent, triangleMap, type TriangleMap } from '../mesh/map.ts'
 import { edgeUnder, triangleCount, type Mesh } from '../mesh/mesh.ts'
 import { dofMap, triangleDofs, triangleSigns } from './dofs.ts'
 import { elasticity } from './element.ts'
@@ -29,12 +29,12 @@ export const FIELD = 7
  */
 export function fieldIn(solution: Solution, element: number, reference: Float64Array): Float64Array {
   const { plate, mesh } = solution
-  return fieldOn(solution, triangleMap(mesh, bulgesOf(plate, mesh), element), element, reference)
+  return fieldOn(solution, triangleMap(mesh, bulgesOf(plate, mesh, solution.order), element), element, reference)
 }
 
 /** A function like `fieldIn` for many elements of one solution. */
 export function fieldSampler(solution: Solution): (element: number, reference: Float64Array) => Float64Array {
-  const bulges = bulgesOf(solution.plate, solution.mesh)
+  const bulges = bulgesOf(solution.plate, solution.mesh, solution.order)
   return (element, reference) => fieldOn(solution, triangleMap(solution.mesh, bulges, element), element, reference)
 }
 
@@ -105,16 +105,15 @@ export function edgeStress({ plate, mesh, order, coefficient }: Solution, b: num
   const t1 = mesh.boundary.span[2 * b + 1]
   const stress = new Float64Array(s.length)
   for (let q = 0; q < s.length; q++) {
-    const t = t0 + ((t1 - t0) * (1 + s[q])) / 2
-    const [dx, dy] = derivativeOn(curve, t)
+    const [dx, dy] = sideTangent(curve, t0, t1, order, s[q])
     let along = 0
     for (let i = 0; i <= order; i++) {
       const n = sign[i] * slope[q * (order + 1) + i]
       along += n * (coefficient[dof[i]] * dx + coefficient[dof[i] + 1] * dy)
     }
-    // dX/ds is half of (dx, dy) (t1 - t0)
-    stress[q] = (along * 2) / ((dx * dx + dy * dy) * (t1 - t0))
+    stress[q] = along / (dx * dx + dy * dy)
     if (!traction) continue
+    const t = t0 + ((t1 - t0) * (1 + s[q])) / 2
     const normal = outwardNormal(curve, t)
     const [tx, ty] = traction(pointOn(curve, t), normal)
     stress[q] += plate.nu * (tx * normal[0] + ty * normal[1])
@@ -139,7 +138,7 @@ export function sideReference(mesh: Mesh, b: number, s: ArrayLike<number>): Floa
 /** Stress [sxx, syy, sxy] at a point of the plate (plate units), null outside it. Newton's method on the element's map. */
 export function stressAtPoint(solution: Solution, x: number, y: number): [number, number, number] | null {
   const { plate, mesh } = solution
-  const bulges = bulgesOf(plate, mesh)
+  const bulges = bulgesOf(plate, mesh, solution.order)
   let best: { element: number; xi: number; eta: number; outside: number } | null = null
   for (let element = 0; element < triangleCount(mesh); element++) {
     const map = triangleMap(mesh, bulges, element)

@@ -41,7 +41,7 @@ function condensedElements(plate: Plate, mesh: Mesh, order: number): CondensedEl
   const reference = referenceTriangle(order)
   const { count, outer, inner } = reference.modes
   const functions = Int32Array.from([...outer, ...inner])
-  const bulges = bulgesOf(plate, mesh)
+  const bulges = bulgesOf(plate, mesh, order)
   const moduli = elasticity(plate.nu)
   return Array.from({ length: triangleCount(mesh) }, (_, t) => {
     const sign = triangleSigns(mesh, order, count, t)

@@ -20,7 +20,7 @@ const view = viewOf(plate, { left: 10, top: 10, right: 310, bottom: 190 })
 
 /** A field given by a formula, at the points to which the elements' exact maps lead. */
 function exactly(on: { plate: Plate; mesh: Mesh }, field: Field): Sampler {
-  const bulges = bulgesOf(on.plate, on.mesh)
+  const bulges = bulgesOf(on.plate, on.mesh, Infinity)
   const at = new Float64Array(6)
   return (element, reference) => {
     const map = triangleMap(on.mesh, bulges, element)
