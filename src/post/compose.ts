@@ -60,7 +60,9 @@ export function composeVerdict({ plateCase, file, tolerance, passes, solution, t
 
   const peaks: (EdgePeak | null)[] = last.raisers.map((reading, r) => {
     if (!reading) return null
-    return foremost(reading.sides, reading.magnitude > 0 ? bars[r]!.error / reading.magnitude : 0)
+    // the place and sign of the one that counts, the size of the largest: a tie must not lower it
+    const chosen = foremost(reading.peaks, reading.magnitude > 0 ? bars[r]!.error / reading.magnitude : 0)
+    return { ...chosen, stress: chosen.stress < 0 ? -reading.magnitude : reading.magnitude }
   })
   const raisers = plate.raisers.map((raiser, r): RaiserVerdict => {
     const found = nominalStress(plate, r, units)

@@ -18,8 +18,8 @@ export interface Pass {
 export interface Reading {
   /** |peak|: the largest edge stress of the raiser. */
   readonly magnitude: number
-  /** The largest edge stress of each of the raiser's boundary sides. */
-  readonly sides: readonly EdgePeak[]
+  /** The local peaks: the largest edge stress of each boundary side that no side next to it exceeds. */
+  readonly peaks: readonly EdgePeak[]
   /** Largest |normal or shear stress| on the free sides at the peak and beside it. */
   readonly leftOver: number
 }
@@ -36,12 +36,24 @@ export function readRaisers(solution: Solution, mesh: number): Pass {
 }
 
 function readRaiser(solution: Solution, raiser: number): Reading {
-  const own = boundarySidesOf(solution.plate, solution.mesh, raiser)
+  const { plate, mesh } = solution
+  const own = boundarySidesOf(plate, mesh, raiser)
   const sides = sidePeaks(solution, own)
-  const magnitude = Math.max(...sides.map(({ stress }) => Math.abs(stress)))
-  const top = sides.findIndex(({ stress }) => Math.abs(stress) === magnitude)
-  const near = [own[(top + own.length - 1) % own.length], own[top], own[(top + 1) % own.length]]
-  return { magnitude, sides, leftOver: freeEdgeResidual(solution, near) }
+  const size = sides.map(({ stress }) => Math.abs(stress))
+  const neighbours = own.map((b) => [own.indexOf(neighbour(mesh, b, -1)), own.indexOf(neighbour(mesh, b, 1))].filter((i) => i >= 0))
+  const peaks = sides.filter((_, i) => neighbours[i].every((n) => size[i] >= size[n]))
+  const magnitude = Math.max(...size)
+  const top = size.indexOf(magnitude)
+  const near = [top, ...neighbours[top]].map((i) => own[i])
+  return { magnitude, peaks, leftOver: freeEdgeResidual(solution, near) }
+}
+
+/** The boundary side before (-1) or after (+1) side b on its loop. */
+function neighbour({ boundary: { count, loop } }: Mesh, b: number, step: -1 | 1): number {
+  const next = b + step
+  if (next >= 0 && next < count && loop[next] === loop[b]) return next
+  // around the loop to its other end
+  return step > 0 ? loop.indexOf(loop[b]) : loop.lastIndexOf(loop[b])
 }
 
 /** Boundary sides of a raiser (an index into `plate.raisers`), -1 for those of none. */
