@@ -25,7 +25,7 @@ export interface Bar {
   readonly source: BarSource
 }
 
-/** Share of the stress left over that counts: over many plates it exceeds the error of the peak by this or more. */
+/** Share of the stress left over that counts. The error of the peak was between nothing and 0.7 of it: it guards, it does not measure. */
 const LEFT_OVER_SHARE = 0.2
 /**
  * Orders 1 and 2 converge like the element size or its square: the finer mesh still has most of the coarser one's error, and the

@@ -106,6 +106,7 @@ function alignBarred(cells: ({ value: string; bar: string } | null)[]): string[]
 
 function governingSentence({ governing, margin, raisers }: Verdict): string {
   if (governing === null) return raisers.length === 0 ? '' : 'No raiser has a finite peak stress.'
+  if (raisers.length === 1) return `${governing} governs: it is the only stress raiser.`
   if (margin === null) return `${governing} governs: no other raiser has a finite peak stress.`
   const magnitude = ({ peak }: RaiserVerdict) => Math.abs(peak?.stress ?? 0)
   const next = raisers.filter(({ id }) => id !== governing).reduce((a, b) => (magnitude(b) > magnitude(a) ? b : a)).id

@@ -14,13 +14,12 @@ const WORTH_A_WORD = 0.002
 
 /** Raisers whose net section is eccentric while a force runs through it: the plain P/A leaves its bending out. */
 export function eccentricWarnings(raisers: readonly RaiserVerdict[]): string[] {
-  return raisers
-    .filter(({ nominal, kt }) => nominal && kt && nominal.flexure !== null && kt.flexure !== null)
-    .map(
-      ({ id, kt, nominal }) =>
-        `${id}: the net section is off the line of the load; the bending that this adds is in Kt ${plainNumber(kt!.net, 4)} ` +
-        `(on plain P/A), not in its nominal stress. With it the nominal is ${plainNumber(nominal!.flexure!, 4)} and Kt ${plainNumber(kt!.flexure!, 4)}.`
-    )
+  const eccentric = raisers.filter(({ kt }) => kt !== null && kt.flexure !== null).map(({ id }) => id)
+  if (eccentric.length === 0) return []
+  return [
+    `${eccentric.join(', ')}: the net section is off the line of the load. Kt on the plain nominal carries the bending that this adds; ` +
+      'the nominal with that bending, and Kt on it, stand beside it.'
+  ]
 }
 
 /** A word where the largest edge stress of the plate is on no raiser; a place near a sharp corner does not count. */
@@ -31,6 +30,7 @@ export function elsewhereWarning(
   toUnit: number
 ): string[] {
   const { plate, mesh } = solution
+  if (plate.raisers.length === 0) return []
   const peaks = sidePeaks(solution, boundarySidesOf(plate, mesh, -1)).filter(({ at }) => !nearSharpCorner(plate, at))
   if (peaks.length === 0) return []
   const top: EdgePeak = foremost(peaks, 1e-9)
@@ -57,18 +57,23 @@ export function nearEndWarnings(plate: Plate): string[] {
   const { bar } = plate
   if (!bar) return []
   const last = bar.sections[bar.sections.length - 1]
-  return plate.raisers.flatMap((raiser) => {
-    const extent = extentAlong(raiser, bar)
-    if (!extent) return []
-    const near: string[] = []
-    if (extent[0] - bar.sections[0].x0 < bar.sections[0].width) near.push('left')
-    if (last.x1 - extent[1] < last.width) near.push('right')
-    if (near.length === 0) return []
-    const ends = near.length === 2 ? 'both loaded ends' : `the ${near[0]} loaded end`
-    return [
-      `${raiser.id}: nearer to ${ends} than one section width; the result holds for the ends as drawn (uniform and linear traction), not for a long bar`
-    ]
-  })
+  const near = (isNear: (extent: readonly [number, number]) => boolean) =>
+    plate.raisers.filter((raiser) => {
+      const extent = extentAlong(raiser, bar)
+      return extent !== null && isNear(extent)
+    })
+  const first = bar.sections[0]
+  const word = (end: string, raisers: readonly Raiser[]) =>
+    raisers.length === 0
+      ? []
+      : [
+          `${raisers.map(({ id }) => id).join(', ')}: nearer to the ${end} end than the width of its section; the result holds for that end ` +
+            'as drawn (uniform and linear traction), not for a long bar'
+        ]
+  return [
+    ...word('left', near(([from]) => from - first.x0 < first.width)),
+    ...word('right', near(([, to]) => last.x1 - to < last.width))
+  ]
 }
 
 function extentAlong(raiser: Raiser, { sections }: Bar): [number, number] | null {
