@@ -101,7 +101,7 @@ export function sideEdges(
     const own = notches.filter(({ x }) => x >= section.x0 && x < section.x1).toSorted((a, b) => a.x - b.x)
     for (const notch of own) {
       straightTo(notch.x - mouthHalfWidth(notch), section.label)
-      add(notchPieces(notch, at, section.out))
+      add(notchPieces(notch, at))
     }
     const next = sections[i + 1]
     if (!next) {
@@ -176,10 +176,10 @@ function reflect(curve: Curve, turn: (point: Point) => Point, angle: (phi: numbe
 }
 
 /** Flank, two halves of the root arc, flank; or the two halves alone where there is no flank. */
-function notchPieces(notch: NotchShape, at: Point, out: number): Piece[] {
+function notchPieces(notch: NotchShape, at: Point): Piece[] {
   const { x, depth, radius, angle, raiser, label } = notch
   const half = angle / 2
-  const edge = -out
+  const edge = at[1]
   const centre: Point = [x, edge + depth - radius]
   const root: Point = [x, edge + depth]
   const end: Point = [x + (x - at[0]), edge]

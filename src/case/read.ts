@@ -1,6 +1,6 @@
 // Text to checked case: YAML 1.2 (and so JSON), the schema, and what this version can solve; every complaint with its place.
 
-import { LineCounter, parseDocument, type Document } from 'yaml'
+import { isMap, isScalar, LineCounter, parseDocument, type Document } from 'yaml'
 import type { z } from 'zod'
 import { CaseError, type FieldPath } from './problem.ts'
 import { isRecord, LOAD_BRANCHES, PLATE_BRANCHES, schemaFor, type CaseFile, type PlateCase } from './schema.ts'
@@ -43,7 +43,7 @@ function parseText(text: string, file: string): Source {
   // oxlint-disable-next-line no-control-regex -- a control character is what a binary file gives away
   if (/[\u0000-\u0008\u000e-\u001f\ufffd]/.test(text)) throw whole('binary', 'expected text (YAML or JSON, UTF-8), got a binary file')
   const lines = new LineCounter()
-  const document = parseDocument(text, { lineCounter: lines, version: '1.2', prettyErrors: false, logLevel: 'silent' })
+  const document = parseDocument(text, { lineCounter: lines, version: '1.2', prettyErrors: false, logLevel: 'error' })
   const place = (offset: number) => {
     const { line, col } = lines.linePos(offset)
     return { line: Math.max(1, line), column: Math.max(1, col) }
@@ -62,9 +62,12 @@ function parseText(text: string, file: string): Source {
   }
   try {
     const raw: unknown = document.toJS({ maxAliasCount: MOST_ALIASES })
-    return { file, raw, locate: (path) => place(offsetOf(document, path)) }
+    return { file, raw, locate: (path, atKey = false) => place((atKey ? keyOffsetOf(document, path) : null) ?? offsetOf(document, path)) }
   } catch (error) {
-    if (error instanceof ReferenceError) throw whole('aliases', `expected at most ${MOST_ALIASES} uses of aliases, got more (or an alias without its anchor)`)
+    if (error instanceof ReferenceError) {
+      const unresolved = /^Unresolved alias.*: (.+)$/.exec(error.message)
+      throw whole('aliases', unresolved ? `expected an anchor &${unresolved[1]} before its alias, got none` : `expected at most ${MOST_ALIASES} uses of aliases, got more`)
+    }
     throw error
   }
 }
@@ -83,6 +86,14 @@ function offsetOf(document: Document, path: FieldPath): number {
     if (range) return range[0]
   }
   return 0
+}
+
+/** Where the key of a field begins, null where the field is no key of a map. */
+function keyOffsetOf(document: Document, path: FieldPath): number | null {
+  const parent: unknown = path.length > 1 ? document.getIn(path.slice(0, -1), true) : document.contents
+  if (!isMap(parent)) return null
+  const pair = parent.items.find(({ key }) => isScalar(key) && String(key.value) === path[path.length - 1])
+  return isScalar(pair?.key) ? (pair.key.range?.[0] ?? null) : null
 }
 
 /** What would be right, for the issues whose schema does not say it itself. */

@@ -6,8 +6,8 @@ export interface Source {
   readonly file: string
   /** The case as it was written, before defaults. */
   readonly raw: unknown
-  /** Line and column, from 1, of a field, or of the nearest part around it that is written in the file. */
-  readonly locate: (path: FieldPath) => { line: number; column: number }
+  /** Line and column, from 1, of a field (of its key, if asked), or of the nearest part around it that is written in the file. */
+  readonly locate: (path: FieldPath, atKey?: boolean) => { line: number; column: number }
 }
 
 /** What the finders of problems say; the source adds field and place. */
@@ -31,7 +31,7 @@ export function sourceOf(plateCase: object): Source {
 /** Problems in file order, with fields and places. */
 export function placeFindings(findings: readonly Finding[], source: Source): Problem[] {
   return findings
-    .map((finding) => ({ ...finding, field: fieldName(finding.path, source.raw), ...source.locate(finding.path) }))
+    .map((finding) => ({ ...finding, field: fieldName(finding.path, source.raw), ...source.locate(finding.path, finding.code === 'unknown-key') }))
     .toSorted((a, b) => a.line - b.line || a.column - b.column)
 }
 
