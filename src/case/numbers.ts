@@ -31,9 +31,9 @@ export function plateNumbers(plateCase: PlateCase): PlateNumbers {
   const { units, plate } = plateCase
   const toMm = LENGTH_UNITS[units.length]
   const largest = Math.max(...plate.sections.flatMap(({ width, length, offset }) => [width, length, Math.abs(offset)])) * toMm
-  const step = 10 ** (decimalExponent(largest) - DIGITS + 1)
+  const perMm = 10 ** (DIGITS - 1 - decimalExponent(largest))
   const count = (length: number) => {
-    const steps = (length * toMm) / step
+    const steps = length * toMm * perMm
     const whole = Math.round(steps)
     return Math.abs(steps - whole) <= CONVERSION * Math.abs(steps) ? whole : steps
   }
@@ -65,7 +65,7 @@ export function plateNumbers(plateCase: PlateCase): PlateNumbers {
       radius: snap(radius),
       angle: (angle * Math.PI) / 180
     })),
-    length: size * step
+    length: size / perMm
   }
 }
 

@@ -13,6 +13,8 @@ import { findUnsupported } from './unsupported.ts'
 const MOST_BYTES = 128 * 1024
 /** Uses of one YAML alias; more are a bomb, not a case. */
 const MOST_ALIASES = 100
+/** Deepest nesting of lists and maps; the parser recurses, and a case has six levels. */
+const MOST_LEVELS = 100
 /** Default modulus, MPa. */
 const DEFAULT_E = 200_000
 
@@ -42,6 +44,7 @@ function parseText(text: string, file: string): Source {
   if (text.length > MOST_BYTES) throw whole('too-large', `expected at most 128 kB, got ${Math.ceil(text.length / 1024)} kB`)
   // oxlint-disable-next-line no-control-regex -- a control character is what a binary file gives away
   if (/[\u0000-\u0008\u000e-\u001f\ufffd]/.test(text)) throw whole('binary', 'expected text (YAML or JSON, UTF-8), got a binary file')
+  if (isTooDeep(text)) throw whole('too-deep', `expected at most ${MOST_LEVELS} levels of lists and maps, got more`)
   const lines = new LineCounter()
   const document = parseDocument(text, { lineCounter: lines, version: '1.2', prettyErrors: false, logLevel: 'error' })
   const place = (offset: number) => {
@@ -70,6 +73,16 @@ function parseText(text: string, file: string): Source {
     }
     throw error
   }
+}
+
+/** More open brackets than levels allowed, or a line that opens more block lists; deeper indentation takes more text than is allowed. */
+function isTooDeep(text: string): boolean {
+  let open = 0
+  for (const [bracket] of text.matchAll(/[[\]{}]/g)) {
+    open = bracket === '[' || bracket === '{' ? open + 1 : Math.max(0, open - 1)
+    if (open > MOST_LEVELS) return true
+  }
+  return new RegExp(`^[ \\t]*(?:[-?:][ \\t]+){${MOST_LEVELS}}`, 'm').test(text)
 }
 
 const YAML_PROBLEMS: Record<string, string> = {
