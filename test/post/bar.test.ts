@@ -1,0 +1,33 @@
+import { describe, expect, it } from 'vitest'
+import { errorBar } from '../../src/post/bar.ts'
+import { expectNear } from '../support/near.ts'
+
+const solve = (mesh: number, order: number, peak: number, leftOver = 0) => ({ mesh, order, peak, leftOver })
+
+describe('error bar', () => {
+  it('has no width to give before there are two meshes', () => {
+    expect(errorBar([solve(1, 6, 3)]).error).toBe(Infinity)
+    expect(errorBar([solve(1, 5, 3), solve(1, 6, 3)]).error).toBe(Infinity)
+  })
+
+  it('is the widest that the evidence gives, and names it', () => {
+    const steps = [solve(1, 6, 3.01), solve(2, 5, 3.001), solve(2, 6, 3)]
+    expect(errorBar(steps).source).toBe('mesh')
+    expectNear(errorBar(steps).error, 0.01, { rel: 1e-9, because: 'the step in mesh' })
+    const order = [solve(1, 6, 3.001), solve(2, 5, 3.01), solve(2, 6, 3)]
+    expect(errorBar(order).source).toBe('order')
+    expectNear(errorBar(order).error, 0.015, { rel: 1e-9, because: 'half as much again as the step in order' })
+    expect(errorBar([...steps.slice(0, 2), solve(2, 6, 3, 0.1)])).toEqual({ error: 0.1 * 0.2, source: 'free edge' })
+    expect(errorBar([solve(1, 6, 3), solve(2, 5, 3), solve(2, 6, 3)]).source).toBe('rounding')
+  })
+
+  it('compares with the mesh just before, at the same order', () => {
+    const steps = [solve(1, 6, 5), solve(2, 6, 4), solve(1, 8, 3.5), solve(2, 7, 3.2), solve(2, 8, 3.1), solve(3, 7, 3.05), solve(3, 8, 3)]
+    expectNear(errorBar(steps).error, 0.1, { rel: 1e-9, because: 'mesh 2 at order 8' })
+  })
+
+  it('of order 1 and 2 looks at the meshes only, twice as wide', () => {
+    const bar = errorBar([solve(1, 2, 3.1), solve(2, 1, 2), solve(2, 2, 3)])
+    expectNear(bar.error, 0.2, { rel: 1e-9, because: 'twice the step in mesh' })
+  })
+})
