@@ -168,7 +168,9 @@ function arcWithArc(a: Arc, b: Arc): Point[] {
 
 /** True when a point lies inside a loop: an odd number of edges on the way out. The ray's slope meets no drawing's edges end on. */
 export function isInside(loop: Loop, point: Point): boolean {
-  const ray: Curve = { kind: 'line', from: point, to: [point[0] + 7.3519, point[1] + 3.1873] }
+  // an arc of at most a quarter circle bulges by less than its chord
+  const reach = 3 * Math.max(...loop.map(({ curve: { from } }) => Math.abs(from[0] - point[0]) + Math.abs(from[1] - point[1])))
+  const ray: Curve = { kind: 'line', from: point, to: [point[0] + 0.91751 * reach, point[1] + 0.39777 * reach] }
   const count = loop.reduce((sum, { curve }) => sum + crossings(ray, curve).length, 0)
   return count % 2 === 1
 }

@@ -38,3 +38,13 @@ export function formatProblems({ file, problems }: CaseError): string {
   const width = Math.max(...problems.map((problem) => place(problem).length))
   return [`${file}: ${problems.length} problems`, ...problems.map((problem) => `  ${place(problem).padEnd(width)}  ${sentence(problem)}`)].join('\n')
 }
+
+/** Words from the file in quotation marks, cut to 40 letters and kept on one line. */
+export function quote(words: string): string {
+  return JSON.stringify(words.length > 40 ? `${words.slice(0, 37)}...` : words)
+}
+
+/** A key as it is, in quotation marks where it is not one word. */
+export function quoteKey(key: string): string {
+  return /^[\w$-]{1,40}$/.test(key) ? key : quote(key)
+}

@@ -192,7 +192,8 @@ function notchPieces(notch: NotchShape, at: Point): Piece[] {
   })
   const rise = depth - radius * (1 - Math.sin(half))
   if (rise <= NO_LENGTH) {
-    const start = Math.atan2(edge - centre[1], at[0] - x)
+    // a centre a rounding above the edge is on it: a semicircle
+    const start = Math.atan2(Math.max(0, edge - centre[1]), at[0] - x)
     const sweep = Math.PI / 2 - start
     return [arc(start, sweep, at, root, 1), arc(Math.PI / 2, sweep, root, end, 0)]
   }

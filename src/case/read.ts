@@ -2,7 +2,9 @@
 
 import { isMap, isScalar, LineCounter, parseDocument, type Document } from 'yaml'
 import type { z } from 'zod'
-import { CaseError, type FieldPath } from './problem.ts'
+import { shoulderSteps } from './bar.ts'
+import { plateNumbers } from './numbers.ts'
+import { CaseError, quote, quoteKey, type FieldPath } from './problem.ts'
 import { isRecord, LOAD_BRANCHES, PLATE_BRANCHES, schemaFor, type CaseFile, type PlateCase } from './schema.ts'
 import { placeFindings, rememberSource, type Finding, type Source } from './source.ts'
 import { nearestWord } from './spelling.ts'
@@ -15,6 +17,8 @@ const MOST_BYTES = 128 * 1024
 const MOST_ALIASES = 100
 /** Deepest nesting of lists and maps; the parser recurses, and a case has six levels. */
 const MOST_LEVELS = 100
+/** Loads below this, in the case's units, are none: stresses from them would underflow. */
+const SMALLEST_LOAD = 1e-12
 /** Default modulus, MPa. */
 const DEFAULT_E = 200_000
 
@@ -41,7 +45,8 @@ export function readCase(text: string, file: string): PlateCase {
 function parseText(text: string, file: string): Source {
   const whole = (code: string, message: string) =>
     new CaseError(file, [{ code, path: [], field: '', message, line: 0, column: 0 }])
-  if (text.length > MOST_BYTES) throw whole('too-large', `expected at most 128 kB, got ${Math.ceil(text.length / 1024)} kB`)
+  const bytes = new TextEncoder().encode(text).length
+  if (bytes > MOST_BYTES) throw whole('too-large', `expected at most 128 kB, got ${Math.ceil(bytes / 1024)} kB`)
   // oxlint-disable-next-line no-control-regex -- a control character is what a binary file gives away
   if (/[\u0000-\u0008\u000e-\u001f\ufffd]/.test(text)) throw whole('binary', 'expected text (YAML or JSON, UTF-8), got a binary file')
   if (isTooDeep(text)) throw whole('too-deep', `expected at most ${MOST_LEVELS} levels of lists and maps, got more`)
@@ -128,21 +133,39 @@ function findingsOf(issue: z.core.$ZodIssue, raw: unknown): Finding[] {
   const path = issue.path as (string | number)[]
   if (issue.code === 'unrecognized_keys') {
     return issue.keys.map((key) => {
+      const rival = rivalOf(path, key, raw)
+      if (rival) return { code: 'mixed', path: [...path, key], message: `expected keys that go together, got ${quote(key)} beside ${quote(rival)}` }
       const allowed = allowedKeys(path, issue.message.split(', '))
       const near = nearestWord(key, allowed)
       const hint = near ? ` (did you mean "${near}"?)` : ''
-      return { code: 'unknown-key', path: [...path, key], message: `expected ${listOf(allowed)}, got "${key}"${hint}` }
+      return { code: 'unknown-key', path: [...path, key], message: `expected ${listOf(allowed)}, got ${quote(key)}${hint}` }
     })
+  }
+  const branches = branchesAt(path)
+  if (branches && !isRecord(valueAt(raw, path))) {
+    return [{ code: 'type', path, message: `expected ${listOf(Object.keys(branches))} in it, got ${show(valueAt(raw, path))}` }]
   }
   return [{ code: issue.code === 'custom' ? 'value' : 'type', path, message: `expected ${inUnits(issue.message, raw)}, got ${show(valueAt(raw, path))}` }]
 }
 
+/** The branches of `plate` and `load`, null elsewhere. */
+function branchesAt(path: FieldPath): Record<string, z.ZodType> | null {
+  if (path.length !== 1) return null
+  return path[0] === 'load' ? LOAD_BRANCHES : path[0] === 'plate' ? PLATE_BRANCHES : null
+}
+
+/** The key that chose the branch of `plate` or `load` where `key` belongs to another one, else null. */
+function rivalOf(path: FieldPath, key: string, raw: unknown): string | null {
+  const branches = branchesAt(path)
+  const group = valueAt(raw, path)
+  if (!branches || !isRecord(group) || !Object.values(branches).some((branch) => keysOfSchema(branch).includes(key))) return null
+  return Object.keys(branches).find((name) => Object.hasOwn(group, name)) ?? null
+}
+
 /** A misspelt key of `plate` or `load` may have been meant for any of their branches. */
 function allowedKeys(path: FieldPath, own: string[]): string[] {
-  const all = (branches: object) => [...new Set(Object.values(branches).flatMap(keysOfSchema))]
-  if (path.length === 1 && path[0] === 'load') return all(LOAD_BRANCHES)
-  if (path.length === 1 && path[0] === 'plate') return all(PLATE_BRANCHES)
-  return own
+  const branches = branchesAt(path)
+  return branches ? [...new Set(Object.values(branches).flatMap(keysOfSchema))] : own
 }
 
 function listOf(words: readonly string[]): string {
@@ -171,8 +194,8 @@ function valueAt(raw: unknown, path: FieldPath): unknown {
 function show(value: unknown): string {
   if (value === undefined || value === null) return 'nothing'
   if (Array.isArray(value)) return `a list of ${value.length}`
-  if (typeof value === 'object') return `{ ${Object.keys(value).slice(0, 4).join(', ')}${Object.keys(value).length > 4 ? ', ...' : ''} }`
-  if (typeof value === 'string') return `"${value.length > 40 ? `${value.slice(0, 37)}...` : value}"`
+  if (typeof value === 'object') return `{ ${Object.keys(value).slice(0, 4).map(quoteKey).join(', ')}${Object.keys(value).length > 4 ? ', ...' : ''} }`
+  if (typeof value === 'string') return quote(value)
   return String(value)
 }
 
@@ -194,7 +217,8 @@ function completeCase(file: CaseFile): PlateCase {
 }
 
 /** What no single field shows: a thickness that is missing, ids used twice, radii for the wrong number of steps, no load at all. */
-function findInconsistencies(file: CaseFile, { plate, holes, notches, load, expect }: PlateCase): Finding[] {
+function findInconsistencies(file: CaseFile, plateCase: PlateCase): Finding[] {
+  const { plate, holes, notches, load, expect } = plateCase
   const findings: Finding[] = []
   const steps = plate.sections.length - 1
   if (file.thickness === undefined) {
@@ -203,8 +227,8 @@ function findInconsistencies(file: CaseFile, { plate, holes, notches, load, expe
   if (plate.fillets.length !== steps) {
     findings.push({ code: 'count', path: ['plate', 'fillets'], message: `expected ${steps} ${steps === 1 ? 'radius' : 'radii'}, one a step between sections, got ${plate.fillets.length}` })
   }
-  if (load.axial === 0 && load.moment === 0) findings.push({ code: 'no-load', path: ['load'], message: 'expected an axial force or a moment other than 0, got none' })
-  const seen = new Map<string, string>(plate.sections.slice(1).map((_, i) => [`shoulder-${i + 1}`, 'a shoulder']))
+  if (Math.abs(load.axial) < SMALLEST_LOAD && Math.abs(load.moment) < SMALLEST_LOAD) findings.push({ code: 'no-load', path: ['load'], message: 'expected an axial force or a moment other than 0, got none' })
+  const seen = new Map<string, string>(shoulderSteps(plateNumbers(plateCase)).map((_, i) => [`shoulder-${i + 1}`, 'a shoulder']))
   const named = [...holes.map(({ id }, i) => ({ id, list: 'holes', i })), ...notches.map(({ id }, i) => ({ id, list: 'notches', i }))]
   for (const { id, list, i } of named) {
     const other = seen.get(id)
@@ -215,7 +239,7 @@ function findInconsistencies(file: CaseFile, { plate, holes, notches, load, expe
     if (raiser === undefined || seen.has(raiser)) return
     const near = nearestWord(raiser, [...seen.keys()])
     const hint = near ? ` (did you mean "${near}"?)` : ''
-    findings.push({ code: 'unknown-raiser', path: ['expect', i, 'raiser'], message: `expected the id of a stress raiser, got "${raiser}"${hint}` })
+    findings.push({ code: 'unknown-raiser', path: ['expect', i, 'raiser'], message: `expected the id of a stress raiser, got ${quote(raiser)}${hint}` })
   })
   return findings
 }

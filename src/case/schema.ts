@@ -9,16 +9,17 @@ const keysOf = <T extends object>(record: T) => Object.keys(record) as [keyof T 
 /** A number from `least` up (or above it) and up to `most`; the text is what is expected. */
 const number = (expected: string, { above, from, below, upTo }: { above?: number; from?: number; below?: number; upTo?: number }) => {
   let schema = z.number(expected)
-  if (above !== undefined) schema = schema.gt(above, expected)
+  if (above !== undefined) schema = schema.gt(above, { error: expected, abort: true })
   if (from !== undefined) schema = schema.gte(from, expected)
   if (below !== undefined) schema = schema.lt(below, expected)
-  return schema.lte(upTo ?? LARGEST, expected).gte(-LARGEST, expected)
+  const bounded = `${expected}, at most ${LARGEST}`
+  return (upTo === undefined ? schema.lte(LARGEST, bounded) : schema.lte(upTo, expected)).gte(-LARGEST, `${expected}, at least -${LARGEST}`)
 }
 /** Beyond these magnitudes a number is a slip of the pen, and squares of it would overflow. */
 const LARGEST = 1e12
 const SMALLEST = 1e-12
 
-const length = () => number('a length > 0 ({length})', { from: SMALLEST })
+const length = () => number('a length > 0 ({length})', { above: 0 }).gte(SMALLEST, `a length > 0 ({length}), at least ${SMALLEST}`)
 const radius = () => number('a radius >= 0 ({length})', { from: 0 })
 const coordinate = (what = 'a coordinate ({length})') => number(what, {})
 const point = () => z.tuple([coordinate(), coordinate()], 'a point [x, y] ({length})')
@@ -158,9 +159,9 @@ const caseSchema = base.extend({ plate, load })
 export type CaseFile = z.output<typeof caseSchema>
 export type Expectation = z.output<typeof expectation>
 
-/** Keys that choose a branch of `plate` and `load`, so that what is wrong is said of the branch that was meant. */
+/** Keys that choose a branch of `plate` and `load`, the first that is there, so that what is wrong is said of the branch that was meant. */
 export const PLATE_BRANCHES = { sections: sectionsPlate, corners: cornersPlate, outline: outlinePlate } as const
-export const LOAD_BRANCHES = { axial: endLoad, moment: endLoad, pin: pinLoad, pins: pinsLoad, edges: edgesLoad, remote: remoteLoad } as const
+export const LOAD_BRANCHES = { axial: endLoad, moment: endLoad, pin: pinLoad, pins: pinsLoad, edges: edgesLoad, remote: remoteLoad, hold: pinLoad, supports: edgesLoad } as const
 
 /** The schema for a raw case, with the branches of `plate` and `load` that its keys choose (sections and end load where none does). */
 export function schemaFor(raw: unknown): z.ZodType<CaseFile> {

@@ -1,34 +1,68 @@
 // What cannot be, found before any mesh: features outside the plate or over one another, fillets and notches that do not fit,
 // ligaments too thin to be solved.
 
-import { outlineOf, sideOfBar } from './bar.ts'
+import { outlineOf, shoulderSteps, sideOfBar } from './bar.ts'
 import { gapBetween, isInside, nearestOn } from './nearest.ts'
 import type { PlateNumbers } from './numbers.ts'
-import type { Edge, Loop, Point } from './plate.ts'
+import { lengthOf, type Curve, type Edge, type Loop, type Point } from './plate.ts'
 import { freeStretches, mouthHalfWidth, NO_LENGTH } from './profile.ts'
 import type { PlateCase } from './schema.ts'
 import type { Finding } from './source.ts'
+import { LENGTH_UNITS } from './units.ts'
 
 /** Thinnest ligament that is taken, as a share of the size of the smaller feature beside it. */
 const THINNEST = 0.01
 
+/** Smallest length that is taken, as a share of the plate's size: lengths are known to 1e-12 of it, so to six digits at least. */
+const SMALLEST = 1e-6
+
+/** Shortest edge that is taken, as a share of the plate's size: the mesh grades down to it, and not much further. */
+const SHORTEST = 1e-7
+
 /** Everything that is unsound in a case's geometry. */
 export function findUnsound(plateCase: PlateCase, numbers: PlateNumbers): Finding[] {
+  const small = findTooSmall(plateCase, numbers)
+  if (small.length > 0) return small
   // what stands on an unsound outline cannot be judged
   const bar = findBarProblems(plateCase, numbers)
   if (bar.length > 0) return bar
   const notches = findNotchProblems(plateCase, numbers)
   if (notches.length > 0) return notches
   const outline = outlineOf(numbers)
+  const slivers = findSlivers(plateCase, numbers, outline)
+  if (slivers.length > 0) return slivers
   return [...findThinNotches(plateCase, numbers, outline), ...findHoleProblems(plateCase, numbers, outline)]
 }
 
 /** Lengths of plate units in words. */
 function lengthWords(plateCase: PlateCase, numbers: PlateNumbers): (length: number) => string {
   const unit = plateCase.units.length
-  const total = plateCase.plate.sections.reduce((sum, { length }) => sum + length, 0)
-  const perPlateUnit = total / numbers.sections[numbers.sections.length - 1].x1
-  return (length) => `${Number((length * perPlateUnit).toPrecision(3))} ${unit}`
+  const perPlateUnit = numbers.length / LENGTH_UNITS[unit]
+  return (length) => `${Number((length * perPlateUnit).toPrecision(5))} ${unit}`
+}
+
+/** Lengths that vanish beside the plate: they would be rounded away, and divided by. */
+function findTooSmall(plateCase: PlateCase, numbers: PlateNumbers): Finding[] {
+  const { plate, holes, notches, units } = plateCase
+  const least = lengthWords(plateCase, numbers)(SMALLEST)
+  const lengths: { path: Finding['path']; length: number; given: number }[] = [
+    ...numbers.sections.flatMap(({ x0, x1, width }, i) => [
+      { path: ['plate', 'sections', i, 'width'], length: width, given: plate.sections[i].width },
+      { path: ['plate', 'sections', i, 'length'], length: x1 - x0, given: plate.sections[i].length }
+    ]),
+    ...numbers.fillets.map((length, i) => ({ path: ['plate', 'fillets', i], length, given: plate.fillets[i] ?? 0 })),
+    ...numbers.holes.map(({ radius }, i) => ({ path: ['holes', i, 'diameter'], length: 2 * radius, given: holes[i].diameter })),
+    ...numbers.notches.flatMap(({ depth, radius }, i) => [
+      { path: ['notches', i, 'depth'], length: depth, given: notches[i].depth },
+      { path: ['notches', i, 'radius'], length: radius, given: notches[i].radius }
+    ])
+  ]
+  // a fillet radius of 0 is a sharp step, and meant
+  return lengths.flatMap(({ path, length, given }) =>
+    given === 0 || length >= SMALLEST
+      ? []
+      : [{ code: 'too-small', path, message: `expected a length of at least ${least} (a millionth of the plate's size), got ${given} ${units.length}` }]
+  )
 }
 
 function findBarProblems(plateCase: PlateCase, numbers: PlateNumbers): Finding[] {
@@ -117,6 +151,24 @@ function findNotchProblems(plateCase: PlateCase, numbers: PlateNumbers): Finding
   return findings
 }
 
+/** Edges that are left over by a hair, such as the face above a fillet that is all but as large as its step. */
+function findSlivers(plateCase: PlateCase, numbers: PlateNumbers, outline: Loop): Finding[] {
+  const words = lengthWords(plateCase, numbers)
+  const [firstNotch, steps] = [numbers.holes.length, shoulderSteps(numbers)]
+  const firstShoulder = firstNotch + numbers.notches.length
+  const pathOf = ({ raiser, curve: { from } }: Edge): Finding['path'] => {
+    if (raiser >= firstShoulder) return ['plate', 'fillets', steps[raiser - firstShoulder]]
+    if (raiser >= firstNotch) return ['notches', raiser - firstNotch]
+    return ['plate', 'sections', Math.max(0, numbers.sections.findLastIndex(({ x0 }) => from[0] >= x0))]
+  }
+  return outline.flatMap((edge): Finding[] => {
+    const length = lengthOf(edge.curve)
+    if (length >= SHORTEST) return []
+    const what = edge.part === 'side' ? edge.label : `a ${edge.part} of ${edge.label}`
+    return [{ code: 'sliver', path: pathOf(edge), message: `expected edges of at least ${words(SHORTEST)} (or none), got ${words(length)} of ${what}` }]
+  })
+}
+
 function gapWords(gap: number, words: (length: number) => string): string {
   return gap > NO_LENGTH ? words(gap) : gap < -NO_LENGTH ? `an overlap of ${words(-gap)}` : 'none'
 }
@@ -138,12 +190,20 @@ function thinnest(own: readonly Edge[], faces: (own: Edge, other: Edge) => boole
   let best: { gap: number; label: string } | null = null
   for (const edge of own) {
     for (const other of outline) {
-      if (!faces(edge, other)) continue
+      if (!faces(edge, other) || (best && boxGap(edge.curve, other.curve) >= best.gap)) continue
       const { gap } = gapBetween(edge.curve, other.curve)
       if (!best || gap < best.gap) best = { gap, label: other.label }
     }
   }
   return best
+}
+
+/** What the gap between two curves is at least: that of their boxes. */
+function boxGap(a: Curve, b: Curve): number {
+  // an arc of at most a quarter circle bulges by less than half its chord
+  const spare = (lengthOf(a) + lengthOf(b)) / 2
+  const apart = (axis: 0 | 1) => Math.max(Math.min(a.from[axis], a.to[axis]) - Math.max(b.from[axis], b.to[axis]), Math.min(b.from[axis], b.to[axis]) - Math.max(a.from[axis], a.to[axis]))
+  return Math.max(apart(0), apart(1)) - spare
 }
 
 function findHoleProblems(plateCase: PlateCase, numbers: PlateNumbers, outline: Loop): Finding[] {

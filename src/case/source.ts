@@ -1,6 +1,6 @@
 // Where the parts of a case stand in its file, kept beside the case so that problems found in its geometry can say so.
 
-import type { FieldPath, Problem } from './problem.ts'
+import { quoteKey, type FieldPath, type Problem } from './problem.ts'
 
 export interface Source {
   readonly file: string
@@ -31,7 +31,7 @@ export function sourceOf(plateCase: object): Source {
 /** Problems in file order, with fields and places. */
 export function placeFindings(findings: readonly Finding[], source: Source): Problem[] {
   return findings
-    .map((finding) => ({ ...finding, field: fieldName(finding.path, source.raw), ...source.locate(finding.path, finding.code === 'unknown-key') }))
+    .map((finding) => ({ ...finding, field: fieldName(finding.path, source.raw), ...source.locate(finding.path, finding.code === 'unknown-key' || finding.code === 'mixed') }))
     .toSorted((a, b) => a.line - b.line || a.column - b.column)
 }
 
@@ -43,8 +43,9 @@ export function fieldName(path: FieldPath, raw: unknown): string {
     at = typeof at === 'object' && at !== null ? (at as Record<string | number, unknown>)[key] : undefined
     if (typeof key === 'number') {
       const id = typeof at === 'object' && at !== null && 'id' in at ? at.id : undefined
-      name += typeof id === 'string' ? ` ${id}` : `[${key + 1}]`
-    } else name += name ? `.${key}` : key
+      // an id that is none (spaces, line breaks) would make the field unreadable
+      name += typeof id === 'string' && /^[\w-]{1,200}$/.test(id) ? ` ${id}` : `[${key + 1}]`
+    } else name += name ? `.${quoteKey(key)}` : quoteKey(key)
   }
   return name
 }

@@ -1,11 +1,18 @@
 // The word that was probably meant.
 
-/** The nearest of `words` by edit distance (V.I. Levenshtein, 1966), null where none is near: a third of the letters at most. */
+/** Longer words are compared by their beginning. */
+const MOST_LETTERS = 60
+
+/**
+ * The nearest of `words` by edit distance (V.I. Levenshtein, 1966), null where none is near: a third of the letters at most, one
+ * letter of two, and a single letter only in its other case.
+ */
 export function nearestWord(word: string, words: readonly string[]): string | null {
+  const letters = word.toLowerCase().slice(0, MOST_LETTERS)
   let best: string | null = null
-  let least = Math.max(1, Math.floor(word.length / 3)) + 1
+  let least = (letters.length < 2 ? 0 : Math.max(1, Math.floor(letters.length / 3))) + 1
   for (const candidate of words) {
-    const distance = editDistance(word.toLowerCase().slice(0, 60), candidate.toLowerCase())
+    const distance = editDistance(letters, candidate.toLowerCase().slice(0, MOST_LETTERS))
     if (distance < least) [best, least] = [candidate, distance]
   }
   return best

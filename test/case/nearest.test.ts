@@ -112,6 +112,8 @@ describe('inside a loop', () => {
   it('a stepped and notched bar, by its dimensions', () => {
     fc.assert(
       fc.property(fc.double({ min: -20, max: 220, noNaN: true }), fc.double({ min: -40, max: 40, noNaN: true }), (x, y) => {
+        // the very edge is neither in nor out
+        fc.pre([0, 100, 200].every((edge) => Math.abs(x - edge) > 1e-6) && [20, 30].every((edge) => Math.abs(Math.abs(y) - edge) > 1e-6))
         expect(isInside(plate.loops[0], [x / length, y / length])).toBe(isInBar(x, y))
       }),
       { seed: 24, numRuns: 2000 }

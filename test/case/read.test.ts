@@ -198,3 +198,79 @@ describe('the cases of the project', () => {
     expect(buildPlate(readCase(readFileSync(join(CASES, file), 'utf8'), file)).raisers.length).toBeGreaterThan(0)
   })
 })
+
+describe('places in the file', () => {
+  const text = [
+    'name: strap',
+    'thickness: 0',
+    'material:',
+    '  nu: x',
+    'notchs: []',
+    'plate: { sections: [{ width: 40, length: -2 }] }',
+    'holes:',
+    '  - shape: circle',
+    '    diametre: 3',
+    '    at: [10]',
+    'load: 3',
+    ''
+  ].join('\n')
+  const expected = [
+    '2:12 type thickness',
+    '4:7 type material.nu',
+    '5:1 unknown-key notchs',
+    '6:42 type plate.sections.0.length',
+    '8:5 type holes.0.diameter',
+    '9:5 unknown-key holes.0.diametre',
+    '10:9 type holes.0.at',
+    '11:7 type load'
+  ]
+
+  it('block and flow style: all problems, in file order', () => expect(rows(text)).toEqual(expected))
+  it('are the same with line ends of two characters', () => expect(rows(text.replaceAll('\n', '\r\n'))).toEqual(expected))
+
+  it('JSON over several lines: the key, not its value', () => {
+    const json = JSON.stringify({ ...good, load: { axail: 1 } }, null, 2)
+    const line = json.split('\n').findIndex((words) => words.includes('axail')) + 1
+    expect(rows(json)).toEqual([`${line}:5 unknown-key load.axail`])
+  })
+
+  it('a problem of geometry has its place too', () => {
+    const deep = 'name: strap\nthickness: 2\nplate: { sections: [{ width: 40, length: 90 }] }\nnotches:\n  - { side: both, x: 45, depth: 20, radius: 3 }\nload: { axial: 5 }\n'
+    try {
+      buildPlate(readCase(deep, 'strap.yaml'))
+      expect.unreachable()
+    } catch (error) {
+      if (!(error instanceof CaseError)) throw error
+      expect(formatProblems(error)).toBe('strap.yaml:5:33 notches[1].depth: expected a depth below half the width of section 1 (20 mm), got 20 mm')
+    }
+  })
+})
+
+describe('a problem stays on one line', () => {
+  const breaks = 'a\nb\tc'
+  it.each([
+    ['value', { thickness: breaks }],
+    ['id', { holes: [{ ...good.holes[0], id: breaks, diameter: -1 }] }],
+    ['key', { [breaks]: 1 }],
+    ['raiser', { expect: [{ raiser: breaks, kt: 3, within: '1%', source: 'x', from: 'memory' }] }]
+  ])('whatever the %s has in it', (_, change) => {
+    const error = refusal(withField(change))
+    const lines = formatProblems(error).split('\n')
+    expect(lines).toHaveLength(error.problems.length === 1 ? 1 : error.problems.length + 1)
+    expect(lines.join(' ')).not.toContain('\t')
+  })
+
+  it('long values are cut', () => {
+    expect(refusal(withField({ thickness: 'x'.repeat(5000) })).problems[0].message).toBe(`expected a length > 0 (mm), got "${'x'.repeat(37)}..."`)
+  })
+})
+
+describe('a load', () => {
+  it.each([[5e-324, 0], [0, 1e-300], [0, 0]])('of %s N and %s N mm is none', (axial, moment) => {
+    expect(refusal(withField({ load: { axial, moment } })).problems.map(({ code }) => code)).toEqual(['no-load'])
+  })
+  it('however small beside the other is kept', () => {
+    const { bar } = buildPlate(readCase(withField({ load: { axial: 1e-300, moment: 5 } }), 'link.json'))
+    expect(Number.isFinite(bar!.axial) && Number.isFinite(bar!.moment)).toBe(true)
+  })
+})

@@ -71,3 +71,27 @@ describe('what cannot be', () => {
     expect(problems[0].message).toBe('expected a ligament of at least 0.04 cm (1 % of the diameter) to the top edge, got an overlap of 1 cm')
   })
 })
+
+describe('lengths that vanish beside the plate', () => {
+  const strip = (width: number, length: number) => ({ plate: { sections: [{ width, length }] } })
+  const step = (radius: number) => ({ plate: { sections: [{ width: 60, length: 100 }, { width: 40, length: 100 }], fillets: [radius] } })
+  const notch = (depth: number, radius: number) => ({ notches: [{ side: 'top', x: 100, depth, radius }] })
+  const refused: [string, object, string][] = [
+    ['width', strip(1e-9, 1e3), 'plate.sections.0.width'],
+    ['width, at the ends of the range', strip(1e-12, 1e12), 'plate.sections.0.width'],
+    ['length', strip(1e12, 1e-12), 'plate.sections.0.length'],
+    ['fillet', step(1e-12), 'plate.fillets.0'],
+    ['hole', { holes: [hole(100, 0, 1e-12)] }, 'holes.0.diameter'],
+    ['depth of a notch', notch(1e-12, 3), 'notches.0.depth'],
+    ['radius of a notch', notch(5, 1e-4), 'notches.0.radius']
+  ]
+  it.each(refused)('%s', (_, parts, path) => {
+    const problems = problemsOf(parts)
+    expect(problems.map((problem) => `${problem.code} ${problem.path.join('.')}`)).toEqual([`too-small ${path}`])
+    expect(problems[0].message).toMatch(/^expected a length of at least \S+ mm \(a millionth of the plate's size\), got \S+ mm$/)
+  })
+
+  it('taken: a sharp step, and what is a little above the limit', () => {
+    for (const parts of [step(0), step(2.1e-4), { holes: [hole(100, 0, 2.1e-4)] }, notch(2.1e-4, 2.1e-4)]) expect(problemsOf(parts)).toEqual([])
+  })
+})
