@@ -1,6 +1,6 @@
 // Distances between points and curves: closed forms for lines and circles, sampling with refinement for ellipses.
 
-import { derivativeOn, pointOn } from './plate.ts'
+import { derivativeOn, lengthOf, pointOn } from './plate.ts'
 import type { Arc, Curve, Loop, Point } from './plate.ts'
 
 /** A point on a curve: parameter t and place. */
@@ -72,6 +72,22 @@ export function gapBetween(a: Curve, b: Curve): { readonly gap: number; readonly
     for (const at of throughCentre(b, a)) consider(nearestOn(a, at[0], at[1]).at, at)
   }
   return best
+}
+
+/** A box [x0, y0, x1, y1] that holds a curve. */
+export type Box = readonly [x0: number, y0: number, x1: number, y1: number]
+
+/** A box around a line or an arc of at most a quarter circle, not the tightest one. */
+export function boxOf(curve: Curve): Box {
+  const { from, to } = curve
+  // such an arc bulges beyond its ends by less than half its length
+  const bulge = curve.kind === 'line' ? 0 : lengthOf(curve) / 2
+  return [Math.min(from[0], to[0]) - bulge, Math.min(from[1], to[1]) - bulge, Math.max(from[0], to[0]) + bulge, Math.max(from[1], to[1]) + bulge]
+}
+
+/** At most the gap between what two boxes hold; negative where they overlap. */
+export function gapOfBoxes(a: Box, b: Box): number {
+  return Math.max(a[0] - b[2], b[0] - a[2], a[1] - b[3], b[1] - a[3])
 }
 
 /** Points of arc `a` on the normal that it shares with `b`: for circles exact, else by alternating projection. */

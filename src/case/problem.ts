@@ -27,6 +27,9 @@ export class CaseError extends Error {
   }
 }
 
+/** Problems that are written out; a file with more of them has one cause. */
+const MOST_SHOWN = 50
+
 /** The problems as text: one on a line of its own, several under a heading, in columns. */
 export function formatProblems({ file, problems }: CaseError): string {
   const place = ({ line, column }: Problem) => (line > 0 ? `${line}:${column}` : '')
@@ -35,8 +38,10 @@ export function formatProblems({ file, problems }: CaseError): string {
     const [only] = problems
     return `${[file, place(only)].filter(Boolean).join(':')}${only.field ? ' ' : ': '}${sentence(only)}`
   }
-  const width = Math.max(...problems.map((problem) => place(problem).length))
-  return [`${file}: ${problems.length} problems`, ...problems.map((problem) => `  ${place(problem).padEnd(width)}  ${sentence(problem)}`)].join('\n')
+  const shown = problems.slice(0, MOST_SHOWN)
+  const width = Math.max(...shown.map((problem) => place(problem).length))
+  const rest = problems.length > shown.length ? [`  and ${problems.length - shown.length} more`] : []
+  return [`${file}: ${problems.length} problems`, ...shown.map((problem) => `  ${place(problem).padEnd(width)}  ${sentence(problem)}`), ...rest].join('\n')
 }
 
 /** Words from the file in quotation marks, cut to 40 letters and kept on one line. */

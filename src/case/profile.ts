@@ -69,7 +69,7 @@ export function freeStretches(sections: readonly EdgeOfSection[], steps: readonl
 }
 
 /** Half the width of a notch at its mouth. */
-export function mouthHalfWidth({ depth, radius, angle }: NotchShape): number {
+export function mouthHalfWidth({ depth, radius, angle }: Pick<NotchShape, 'depth' | 'radius' | 'angle'>): number {
   const half = angle / 2
   const rise = depth - radius * (1 - Math.sin(half))
   // without a flank the mouth is cut by the circle itself

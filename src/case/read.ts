@@ -63,7 +63,7 @@ function parseText(text: string, file: string): Source {
         code: 'yaml',
         path: [],
         field: '',
-        message: YAML_PROBLEMS[code] ?? `expected YAML 1.2 or JSON, got: ${message.split('\n')[0]}`,
+        message: YAML_PROBLEMS[code] ?? `expected YAML 1.2 or JSON, got: ${message.split('\n')[0].slice(0, 120)}`,
         ...place(pos[0])
       }))
     )

@@ -2,9 +2,9 @@
 // ligaments too thin to be solved.
 
 import { outlineOf, shoulderSteps, sideOfBar } from './bar.ts'
-import { gapBetween, isInside, nearestOn } from './nearest.ts'
+import { boxOf, gapBetween, gapOfBoxes, isInside, nearestOn, type Box } from './nearest.ts'
 import type { PlateNumbers } from './numbers.ts'
-import { lengthOf, type Curve, type Edge, type Loop, type Point } from './plate.ts'
+import { lengthOf, type Edge, type Loop, type Point } from './plate.ts'
 import { freeStretches, mouthHalfWidth, NO_LENGTH } from './profile.ts'
 import type { PlateCase } from './schema.ts'
 import type { Finding } from './source.ts'
@@ -35,10 +35,10 @@ export function findUnsound(plateCase: PlateCase, numbers: PlateNumbers): Findin
 }
 
 /** Lengths of plate units in words. */
-function lengthWords(plateCase: PlateCase, numbers: PlateNumbers): (length: number) => string {
+function lengthWords(plateCase: PlateCase, numbers: PlateNumbers, digits = 5): (length: number) => string {
   const unit = plateCase.units.length
   const perPlateUnit = numbers.length / LENGTH_UNITS[unit]
-  return (length) => `${Number((length * perPlateUnit).toPrecision(5))} ${unit}`
+  return (length) => `${Number((length * perPlateUnit).toPrecision(digits))} ${unit}`
 }
 
 /** Lengths that vanish beside the plate: they would be rounded away, and divided by. */
@@ -97,13 +97,17 @@ function findBarProblems(plateCase: PlateCase, numbers: PlateNumbers): Finding[]
       })
     })
   }
-  return findings
+  return onePerPlace(findings)
 }
 
 /** Notches that are too deep for the plate, off their straight edge, or over one another on one side. */
 function findNotchProblems(plateCase: PlateCase, numbers: PlateNumbers): Finding[] {
   const words = lengthWords(plateCase, numbers)
   const findings: Finding[] = []
+  const free = ([1, -1] as const).map((side) => {
+    const { sections: edges, steps } = sideOfBar(numbers, side)
+    return { side, stretches: freeStretches(edges, steps) }
+  })
   numbers.notches.forEach((notch, n) => {
     const at = numbers.sections.findIndex(({ x0, x1 }) => notch.x >= x0 && notch.x < x1)
     if (at < 0) {
@@ -113,16 +117,22 @@ function findNotchProblems(plateCase: PlateCase, numbers: PlateNumbers): Finding
     }
     const room = numbers.sections[at].width / notch.sides.length
     if (notch.depth >= room) {
-      const half = notch.sides.length === 2 ? 'half the width' : 'the width'
-      findings.push({ code: 'too-deep', path: ['notches', n, 'depth'], message: `expected a depth below ${half} of section ${at + 1} (${words(room)}), got ${words(notch.depth)}` })
+      const share = notch.sides.length === 2 ? 'half the width' : 'the width'
+      findings.push({ code: 'too-deep', path: ['notches', n, 'depth'], message: `expected a depth below ${share} of section ${at + 1} (${words(room)}), got ${words(notch.depth)}` })
       return
     }
-    for (const side of notch.sides) {
-      const own = sideOfBar(numbers, side)
-      const { x0, x1 } = freeStretches(own.sections, own.steps)[at]
-      const shape = own.notches.find(({ label, x }) => label === `notch ${notch.id}` && x === notch.x)!
-      const half = mouthHalfWidth(shape)
-      if (notch.x - half > x0 && notch.x + half < x1) continue
+    const half = mouthHalfWidth(notch)
+    for (const { side, stretches } of free) {
+      const { x0, x1 } = stretches[at]
+      if (!notch.sides.includes(side)) continue
+      const gap = Math.min(notch.x - half - x0, x1 - notch.x - half)
+      const least = THINNEST * notch.depth
+      if (gap >= least) continue
+      if (gap > NO_LENGTH) {
+        const message = `expected a gap of at least ${words(least)} (1 % of the notch's depth) beside the mouth on the straight ${side > 0 ? 'top' : 'bottom'} edge of section ${at + 1}, got ${words(gap)}`
+        findings.push({ code: 'thin', path: ['notches', n], message })
+        break
+      }
       findings.push({
         code: 'off-edge',
         path: ['notches', n, 'x'],
@@ -153,7 +163,8 @@ function findNotchProblems(plateCase: PlateCase, numbers: PlateNumbers): Finding
 
 /** Edges that are left over by a hair, such as the face above a fillet that is all but as large as its step. */
 function findSlivers(plateCase: PlateCase, numbers: PlateNumbers, outline: Loop): Finding[] {
-  const words = lengthWords(plateCase, numbers)
+  // so short a length is known to no more digits
+  const words = lengthWords(plateCase, numbers, 2)
   const [firstNotch, steps] = [numbers.holes.length, shoulderSteps(numbers)]
   const firstShoulder = firstNotch + numbers.notches.length
   const pathOf = ({ raiser, curve: { from } }: Edge): Finding['path'] => {
@@ -161,11 +172,21 @@ function findSlivers(plateCase: PlateCase, numbers: PlateNumbers, outline: Loop)
     if (raiser >= firstNotch) return ['notches', raiser - firstNotch]
     return ['plate', 'sections', Math.max(0, numbers.sections.findLastIndex(({ x0 }) => from[0] >= x0))]
   }
-  return outline.flatMap((edge): Finding[] => {
+  const found = outline.flatMap((edge): Finding[] => {
     const length = lengthOf(edge.curve)
     if (length >= SHORTEST) return []
     const what = edge.part === 'side' ? edge.label : `a ${edge.part} of ${edge.label}`
     return [{ code: 'sliver', path: pathOf(edge), message: `expected edges of at least ${words(SHORTEST)} (or none), got ${words(length)} of ${what}` }]
+  })
+  return onePerPlace(found)
+}
+
+/** The first finding of each place: what is wrong on the upper side mostly is so on the lower side too. */
+function onePerPlace(findings: readonly Finding[]): Finding[] {
+  const places = new Set<string>()
+  return findings.filter(({ path }) => {
+    const place = path.join('.')
+    return !places.has(place) && places.add(place)
   })
 }
 
@@ -176,34 +197,33 @@ function gapWords(gap: number, words: (length: number) => string): string {
 /** Notches whose root comes too near to what lies across the bar: the other edge, its notches and fillets. */
 function findThinNotches(plateCase: PlateCase, numbers: PlateNumbers, outline: Loop): Finding[] {
   const words = lengthWords(plateCase, numbers)
+  const boxed = outline.map((edge) => ({ edge, box: boxOf(edge.curve) }))
   return numbers.notches.flatMap((notch, n): Finding[] => {
-    const own = outline.filter(({ raiser }) => raiser === numbers.holes.length + n)
-    const found = thinnest(own, (a, b) => b.side !== a.side, outline)
+    const own = boxed.filter(({ edge }) => edge.raiser === numbers.holes.length + n)
     const least = THINNEST * notch.depth
-    if (!found || found.gap >= least) return []
+    const found = thinnest(own, boxed, least)
+    if (!found) return []
     return [{ code: 'thin', path: ['notches', n], message: `expected a ligament of at least ${words(least)} (1 % of the notch's depth) to ${found.label}, got ${gapWords(found.gap, words)}` }]
   })
 }
 
-/** The smallest gap between edges of one feature and those edges of the outline that `faces` lets through. */
-function thinnest(own: readonly Edge[], faces: (own: Edge, other: Edge) => boolean, outline: Loop): { gap: number; label: string } | null {
+interface BoxedEdge {
+  readonly edge: Edge
+  readonly box: Box
+}
+
+/** The smallest gap below `least` between a notch's edges and what lies across the bar from each of them, null where there is none. */
+function thinnest(own: readonly BoxedEdge[], outline: readonly BoxedEdge[], least: number): { gap: number; label: string } | null {
   let best: { gap: number; label: string } | null = null
-  for (const edge of own) {
+  let limit = least
+  for (const { edge, box } of own) {
     for (const other of outline) {
-      if (!faces(edge, other) || (best && boxGap(edge.curve, other.curve) >= best.gap)) continue
-      const { gap } = gapBetween(edge.curve, other.curve)
-      if (!best || gap < best.gap) best = { gap, label: other.label }
+      if (other.edge.side === edge.side || gapOfBoxes(box, other.box) >= limit) continue
+      const { gap } = gapBetween(edge.curve, other.edge.curve)
+      if (gap < limit) [best, limit] = [{ gap, label: other.edge.label }, gap]
     }
   }
   return best
-}
-
-/** What the gap between two curves is at least: that of their boxes. */
-function boxGap(a: Curve, b: Curve): number {
-  // an arc of at most a quarter circle bulges by less than half its chord
-  const spare = (lengthOf(a) + lengthOf(b)) / 2
-  const apart = (axis: 0 | 1) => Math.max(Math.min(a.from[axis], a.to[axis]) - Math.max(b.from[axis], b.to[axis]), Math.min(b.from[axis], b.to[axis]) - Math.max(a.from[axis], a.to[axis]))
-  return Math.max(apart(0), apart(1)) - spare
 }
 
 function findHoleProblems(plateCase: PlateCase, numbers: PlateNumbers, outline: Loop): Finding[] {
@@ -238,6 +258,8 @@ function findHoleProblems(plateCase: PlateCase, numbers: PlateNumbers, outline: 
         path: ['holes', h],
         message: `expected a gap of at least ${words(wanted)} to hole ${holes[other].id}, got ${gapWords(between, words)} (centres ${words(apart)} apart)`
       })
+      // one is enough to move it
+      break
     }
   })
   return findings

@@ -1,7 +1,7 @@
 import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
 import { buildPlate } from '../../src/case/build.ts'
-import { gapBetween, isInside, nearestOn } from '../../src/case/nearest.ts'
+import { boxOf, gapBetween, gapOfBoxes, isInside, nearestOn } from '../../src/case/nearest.ts'
 import { circularArc, lengthOf, pointOn, type Arc, type Curve, type Point } from '../../src/case/plate.ts'
 import { caseFrom } from '../support/case.ts'
 import { expectNear } from '../support/near.ts'
@@ -95,6 +95,20 @@ describe('the gap between two curves', () => {
     expectNear(gapBetween(quarter, inner).gap, 0.3, { abs: 1e-15, because: 'concentric arcs' })
     const roots = [circularArc([0, 5], 3, Math.PI, Math.PI), circularArc([4, -4], 2, 0, Math.PI)]
     expectNear(distance(roots[0].centre, roots[1].centre) - 5, gapBetween(roots[0], roots[1]).gap, { abs: 1e-14, because: 'two roots that face each other' })
+  })
+})
+
+describe('the boxes of two curves', () => {
+  it('hold them, and their gap is at most that of the curves', () => {
+    const curve = fc.oneof(line, circle)
+    fc.assert(
+      fc.property(curve, curve, (a, b) => {
+        const [x0, y0, x1, y1] = boxOf(a)
+        for (const [x, y] of samplesOf(a, 40)) expect(x >= x0 - 1e-15 && x <= x1 + 1e-15 && y >= y0 - 1e-15 && y <= y1 + 1e-15).toBe(true)
+        expect(gapOfBoxes(boxOf(a), boxOf(b))).toBeLessThanOrEqual(gapBetween(a, b).gap + 1e-15)
+      }),
+      { seed: 25, numRuns: 300 }
+    )
   })
 })
 

@@ -61,7 +61,7 @@ describe('the numbers of a plate', () => {
         expect(shapeOf(other)).toEqual(shapeOf(plain))
         expectNear(other.length, plain.length * scale, { rel: 1e-15, because: 'a plate unit in mm' })
       }),
-      { seed: 41, numRuns: 120 }
+      { seed: 41, numRuns: 60 }
     )
   })
 

@@ -2,6 +2,7 @@ import fc from 'fast-check'
 import { readdirSync, readFileSync } from 'node:fs'
 import { join, resolve } from 'node:path'
 import { describe, expect, it } from 'vitest'
+import { parse } from 'yaml'
 import { buildPlate } from '../../src/case/build.ts'
 import { CaseError, formatProblems } from '../../src/case/problem.ts'
 import { readCase } from '../../src/case/read.ts'
@@ -189,6 +190,34 @@ describe('the JSON Schema', () => {
     const schema = caseJsonSchema() as { properties: object; additionalProperties: boolean }
     expect(Object.keys(schema.properties)).toEqual(expect.arrayContaining(['name', 'units', 'thickness', 'material', 'plate', 'holes', 'notches', 'load', 'nominal', 'tolerance', 'expect']))
     expect(schema.additionalProperties).toBe(false)
+  })
+})
+
+describe('the JSON Schema and the cases of the project', () => {
+  type Node = { properties?: Record<string, unknown>; additionalProperties?: unknown; type?: string }
+  const objects: Node[] = []
+  const walk = (node: unknown): void => {
+    if (Array.isArray(node)) node.forEach(walk)
+    else if (typeof node === 'object' && node !== null) {
+      if ('properties' in node) objects.push(node as Node)
+      Object.values(node).forEach(walk)
+    }
+  }
+  walk(caseJsonSchema())
+
+  it('every group of keys is closed', () => {
+    expect(objects.length).toBeGreaterThan(15)
+    for (const { additionalProperties } of objects) expect(additionalProperties).toBe(false)
+  })
+
+  it('every key of the cases is known, and only the fields without a default are required', () => {
+    const top = caseJsonSchema() as { required: string[] }
+    expect(top.required.toSorted()).toEqual(['load', 'name', 'plate'])
+    const known = new Set(objects.flatMap(({ properties }) => Object.keys(properties!)))
+    for (const file of readdirSync(CASES, { recursive: true, encoding: 'utf8' }).filter((name) => name.endsWith('.yaml'))) {
+      const keys = pathsOf(parse(readFileSync(join(CASES, file), 'utf8'))).flat().filter((key) => typeof key === 'string')
+      expect(keys.filter((key) => !known.has(key))).toEqual([])
+    }
   })
 })
 

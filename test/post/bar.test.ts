@@ -26,6 +26,11 @@ describe('error bar', () => {
     expectNear(errorBar(steps).error, 0.1, { rel: 1e-9, because: 'mesh 2 at order 8' })
   })
 
+  it('leans on the stress left over as long as the steps are irregular', () => {
+    const leftOver = (order: number) => errorBar([solve(1, order, 3), solve(2, order - 1, 3), solve(2, order, 3, 0.1)]).error
+    expect([1, 2, 4, 5, 8].map(leftOver)).toEqual([5, 1.25, 1.25, 0.2, 0.2].map((share) => share * 0.1))
+  })
+
   it('of order 1 and 2 looks at the meshes only, twice as wide', () => {
     const bar = errorBar([solve(1, 2, 3.1), solve(2, 1, 2), solve(2, 2, 3)])
     expectNear(bar.error, 0.2, { rel: 1e-9, because: 'twice the step in mesh' })

@@ -132,6 +132,14 @@ describe.each(Object.entries(plates))('%s', (_, drawing) => {
     expect(solve(drawing)).toEqual(plain)
   })
 
+  it('the bar of every fixed order holds what the accuracy loop finds', () => {
+    const tight = solve(drawing, 1e-5)
+    for (const order of [1, 2, 3, 4, 5, 6, 8]) {
+      const { raisers } = verify(readCase(JSON.stringify({ name: 'plate', ...drawing }), 'plate'), { file: 'plate', order }).verdict
+      expectWithinBars(raisers, tight.raisers, `order ${order}`)
+    }
+  })
+
   it('a tighter tolerance lands inside the bar, with no wider one', () => {
     const tight = solve(drawing, 1e-4)
     expect(tight.settled).toBe(true)
