@@ -108,12 +108,12 @@ describe('a step that goes in on one side and out on the other', () => {
 
 describe('any bar that is taken', () => {
   const size = (min: number, max: number) => fc.double({ min, max, noNaN: true })
-  const section = fc.record({ width: size(20, 60), length: size(30, 120), offset: size(-12, 12) })
+  const section = fc.record({ width: size(20, 60), length: size(60, 120), offset: size(-8, 8) })
   const bar = fc.array(section, { minLength: 1, maxLength: 4 }).chain((sections) =>
     fc.record({
-      plate: fc.record({ sections: fc.constant(sections), fillets: fc.array(fc.oneof(size(0.5, 20), fc.constant(0)), { minLength: sections.length - 1, maxLength: sections.length - 1 }) }),
-      notches: fc.array(fc.record({ side: fc.constantFrom('top', 'bottom', 'both'), x: size(0, 300), depth: size(0.5, 8), radius: size(0.5, 8), angle: fc.oneof(fc.constant(0), size(0, 150)) }), { maxLength: 2 }),
-      holes: fc.array(fc.record({ shape: fc.constant('circle'), diameter: size(1, 15), at: fc.tuple(size(0, 300), size(-20, 20)) }), { maxLength: 2 })
+      plate: fc.record({ sections: fc.constant(sections), fillets: fc.array(fc.oneof(size(0.5, 12), fc.constant(0)), { minLength: sections.length - 1, maxLength: sections.length - 1 }) }),
+      notches: fc.array(fc.record({ side: fc.constantFrom('top', 'bottom', 'both'), x: size(5, 55), depth: size(0.5, 6), radius: size(0.5, 6), angle: fc.oneof(fc.constant(0), size(0, 130)) }), { maxLength: 2 }),
+      holes: fc.array(fc.record({ shape: fc.constant('circle'), diameter: size(1, 8), at: fc.tuple(size(5, 200), size(-8, 8)) }), { maxLength: 2 })
     })
   )
 
@@ -144,10 +144,10 @@ describe('any bar that is taken', () => {
         // two right angles at each end
         expect(outer.filter(({ part }) => part === 'end').map(({ label }) => label).toSorted()).toEqual(['the left end', 'the right end'])
       }),
-      { seed: 51, numRuns: 400 }
+      { seed: 51, numRuns: 300 }
     )
     // the rest is refused for overlaps; too few taken would test nothing
-    expect(taken).toBeGreaterThan(60)
+    expect(taken).toBeGreaterThan(100)
   })
 
   it('balances: the left end\'s traction against the right end\'s', () => {
