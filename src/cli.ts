@@ -8,7 +8,7 @@ import { fileURLToPath } from 'node:url'
 import { Command, CommanderError, InvalidArgumentError, Option } from 'commander'
 import { CaseError, formatProblems } from './case/problem.ts'
 import { readCase } from './case/read.ts'
-import { caseJsonSchema, readShare, type PlateCase } from './case/schema.ts'
+import { caseJsonSchema, LEAST_TOLERANCE, readShare, type PlateCase } from './case/schema.ts'
 import { renderFigure } from './post/draw/figure.ts'
 import { percent, plainNumber, withBar } from './post/format.ts'
 import { CAUTIONS, reportText } from './post/report.ts'
@@ -253,7 +253,7 @@ function hasColour({ stdoutIsTerminal, env }: Io): boolean {
 
 function parseTolerance(text: string): number {
   const share = readShare(text)
-  if (share === null) throw new InvalidArgumentError('Expected a share above 0 and below 1, such as 0.001 or 0.1%.')
+  if (share === null || share < LEAST_TOLERANCE) throw new InvalidArgumentError(`Expected a share of at least ${LEAST_TOLERANCE} and below 1, such as 0.001 or 0.1%.`)
   return share
 }
 

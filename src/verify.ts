@@ -88,7 +88,7 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
     compareCoarse = false
   }
   time.total = clock() - start
-  return { verdict: composeVerdict({ plateCase, file: options.file, tolerance, passes, solution, time }), plate, solution }
+  return { verdict: composeVerdict({ plateCase, file: options.file, tolerance, fixedOrder: options.order ?? null, passes, solution, time }), plate, solution }
 }
 
 /** One halving more at the given raisers, and at sharp ones: their singular fields reach the others. */

@@ -39,6 +39,10 @@ export const shareSchema = z
     return share ?? 0
   })
 
+/** Smallest tolerance that can be asked for: below it rounding, not the mesh, would have to be judged. */
+export const LEAST_TOLERANCE = 1e-7
+const LEAST_TOLERANCE_TEXT = 'a tolerance of at least 1e-7'
+
 /** The number behind 0.001, "1e-3" or "0.1%"; null where it is not between 0 and 1. */
 export function readShare(value: number | string): number | null {
   const match = /^\s*([0-9.]+(?:e[+-]?[0-9]+)?)\s*(%?)\s*$/i.exec(String(value))
@@ -149,7 +153,7 @@ const base = z.strictObject({
   holes: z.array(hole, 'a list of holes').max(2000, 'at most 2000 holes').default([]),
   notches: z.array(notch, 'a list of notches').max(2000, 'at most 2000 notches').default([]),
   nominal: nominal.optional(),
-  tolerance: shareSchema.default(0.001),
+  tolerance: shareSchema.refine((share) => share >= LEAST_TOLERANCE, LEAST_TOLERANCE_TEXT).default(0.001),
   expect: z.array(expectation, 'a list of expectations').optional()
 })
 

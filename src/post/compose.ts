@@ -11,7 +11,7 @@ import { nominalStress } from './nominal.ts'
 import { boundarySidesOf, type Pass } from './pass.ts'
 import { foremost, freeEdgeResidual, type EdgePeak } from './peak.ts'
 import type { Peak, RaiserVerdict, Verdict } from './verdict.ts'
-import { eccentricWarnings, elsewhereWarning, nearEndWarnings, unsettledWarnings, yieldWarnings } from './warnings.ts'
+import { eccentricWarnings, elsewhereWarning, nearEndWarnings, sharpWarnings, unsettledWarnings, yieldWarnings } from './warnings.ts'
 import { whereOnEdge } from './where.ts'
 
 /** Share of the governing peak below which a raiser's own peak no longer sets the width of bar that is wanted of it. */
@@ -42,6 +42,8 @@ export interface Findings {
   readonly plateCase: PlateCase
   readonly file: string
   readonly tolerance: number
+  /** The order that was fixed by hand, null for the accuracy loop. */
+  readonly fixedOrder: number | null
   readonly passes: readonly Pass[]
   /** The last pass's solution. */
   readonly solution: Solution
@@ -49,7 +51,7 @@ export interface Findings {
 }
 
 /** The verdict of a case in the case's units. */
-export function composeVerdict({ plateCase, file, tolerance, passes, solution, time }: Findings): Verdict {
+export function composeVerdict({ plateCase, file, tolerance, fixedOrder, passes, solution, time }: Findings): Verdict {
   const { plate, mesh, order } = solution
   const { units } = plateCase
   const toStress = plate.unit.stress / STRESS_UNITS[units.stress]
@@ -104,6 +106,7 @@ export function composeVerdict({ plateCase, file, tolerance, passes, solution, t
     governing,
     margin,
     tolerance,
+    fixedOrder,
     units,
     raisers,
     checks: {
@@ -120,6 +123,7 @@ export function composeVerdict({ plateCase, file, tolerance, passes, solution, t
     },
     time,
     warnings: [
+      ...sharpWarnings(raisers),
       ...unsettledWarnings(raisers, unsettled.map((r) => plate.raisers[r].id), tolerance),
       ...yieldWarnings(raisers, plateCase.material.yield, units.stress),
       ...eccentricWarnings(raisers),

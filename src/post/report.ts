@@ -106,8 +106,9 @@ function alignBarred(cells: ({ value: string; bar: string } | null)[]): string[]
 
 function governingSentence({ governing, margin, raisers }: Verdict): string {
   if (governing === null) return raisers.length === 0 ? '' : 'No raiser has a finite peak stress.'
-  if (raisers.length === 1) return `${governing} governs: it is the only stress raiser.`
-  if (margin === null) return `${governing} governs: no other raiser has a finite peak stress.`
+  const sharp = raisers.filter(({ peak }) => peak === null).map(({ id }) => id)
+  if (sharp.length > 0) return `${governing} has the largest finite peak; the stress at ${sharp.join(', ')} has no bound.`
+  if (margin === null) return `${governing} governs: it is the only stress raiser.`
   const magnitude = ({ peak }: RaiserVerdict) => Math.abs(peak?.stress ?? 0)
   const next = raisers.filter(({ id }) => id !== governing).reduce((a, b) => (magnitude(b) > magnitude(a) ? b : a)).id
   if (margin === 0) return `${governing} governs in a tie: the peak of ${next} is the same within the error bars.`
@@ -171,9 +172,10 @@ function changeText(change: number): string {
   return `${change < 0 ? '−' : '+'}${text.includes('e') ? plainNumber(100 * Math.abs(change), 2) : text} %`
 }
 
-function settledLines({ settled, tolerance, raisers }: Verdict, style: Style): string[] {
+function settledLines({ settled, tolerance, fixedOrder, raisers }: Verdict, style: Style): string[] {
   if (raisers.length === 0) return []
   if (settled) return wrap(`Settled: every error bar is within the tolerance of ${percent(tolerance)}.`)
+  if (fixedOrder !== null) return wrap(`Order ${fixedOrder} was fixed: the bars above are what it gives, wider than the tolerance of ${percent(tolerance)}.`)
   return wrap(`NOT SETTLED to the tolerance of ${percent(tolerance)}: the bars above are what was reached.`).map(style.warn)
 }
 

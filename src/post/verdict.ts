@@ -16,6 +16,8 @@ export interface Verdict {
   /** By how much the governing |peak| exceeds the next raiser's, relative; null with a single raiser; 0 for a tie. */
   readonly margin: number | null
   readonly tolerance: number
+  /** The order that was fixed by hand, null where the accuracy loop chose. */
+  readonly fixedOrder: number | null
   readonly units: { readonly length: LengthUnit; readonly force: ForceUnit; readonly stress: StressUnit }
   readonly raisers: readonly RaiserVerdict[]
   readonly checks: Checks

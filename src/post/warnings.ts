@@ -12,6 +12,16 @@ import type { Solution } from '../solve/field.ts'
 /** The stress elsewhere must exceed the governing peak by this much, relative, to be worth a word: it may be its own edge's end. */
 const WORTH_A_WORD = 0.002
 
+/** Sharp raisers: what governs is named among the finite ones, and must not hide that the stress at these has no bound. */
+export function sharpWarnings(raisers: readonly RaiserVerdict[]): string[] {
+  const sharp = raisers.filter(({ peak }) => peak === null).map(({ id }) => id)
+  if (sharp.length === 0) return []
+  return [
+    `${sharp.join(', ')}: a sharp re-entrant corner. The elastic stress there has no bound and is above every peak of this table, ` +
+      'which covers the other raisers only; give it its real radius.'
+  ]
+}
+
 /** Raisers whose net section is eccentric while a force runs through it: the plain P/A leaves its bending out. */
 export function eccentricWarnings(raisers: readonly RaiserVerdict[]): string[] {
   const eccentric = raisers.filter(({ kt }) => kt !== null && kt.flexure !== null).map(({ id }) => id)
@@ -38,7 +48,8 @@ export function elsewhereWarning(
   if (governing && Math.abs(stress) <= (Math.abs(governing.stress) + governing.error) * (1 + WORTH_A_WORD)) return []
   const place = whereOnEdge(plate, top.loop, top.edge, top.t, units)
   const compared = governing ? `, above the peak of ${governing.id} (${plainNumber(governing.stress, 4)} ${units.stress})` : ''
-  return [`the largest stress of the plate, ${plainNumber(stress, 4)} ${units.stress}, is at no stress raiser: ${place}${compared}`]
+  const what = plate.sharpCorners.length > 0 ? 'apart from the sharp corners the largest stress' : 'the largest stress of the plate'
+  return [`${what}, ${plainNumber(stress, 4)} ${units.stress}, is at no stress raiser: ${place}${compared}`]
 }
 
 /** Within the length of the shorter edge at a sharp corner the singular stress has no bound, so its size says nothing. */
@@ -83,15 +94,16 @@ function extentAlong(raiser: Raiser, { sections }: Bar): [number, number] | null
   return null
 }
 
-/** Raisers whose peak exceeds the yield stress: there the linear answer ends. */
+/** Raisers whose peak, or even nominal stress, exceeds the yield stress: there the linear answer ends. */
 export function yieldWarnings(raisers: readonly RaiserVerdict[], yieldStress: number | null, unit: string): string[] {
   if (yieldStress === null) return []
   return raisers
     .filter(({ peak }) => peak && Math.abs(peak.stress) > yieldStress)
     .map(
-      ({ id, peak }) =>
-        `${id}: the peak is ${plainNumber(Math.abs(peak!.stress) / yieldStress, 3)} times the yield stress of ${plainNumber(yieldStress, 4)} ${unit}; ` +
-        'the linear elastic answer ends there (Kt stays what it is, the stress does not)'
+      ({ id, peak, nominal }) =>
+        `${id}: the peak is ${plainNumber(Math.abs(peak!.stress) / yieldStress, 3)} times the yield stress of ${plainNumber(yieldStress, 4)} ${unit}: ` +
+        'the material yields there, and the real stress is not this linear elastic one' +
+        (nominal && Math.abs(nominal.net) > yieldStress ? `; the net nominal stress itself is ${plainNumber(Math.abs(nominal.net) / yieldStress, 3)} times yield` : '')
     )
 }
 

@@ -48,7 +48,7 @@ describe('a case', () => {
     expectNear(readCase(`${link}\ntolerance: ${text}\n`, 'link.yaml').tolerance, value, { rel: 1e-15, because: 'the same share' })
   })
 
-  it.each(['0', '1', '5', '-0.1', 'abc', '.nan', '[1]'])('tolerance: %s is refused', (text) => {
+  it.each(['0', '1', '5', '-0.1', '1e-8', 'abc', '.nan', '[1]'])('tolerance: %s is refused', (text) => {
     expect(refusal(`${link}\ntolerance: ${text}\n`).problems[0].path).toEqual(['tolerance'])
   })
 

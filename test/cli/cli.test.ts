@@ -81,7 +81,7 @@ describe('verify', () => {
     for (const text of ['0', '-1', '200%', 'fine', '1e999']) {
       const { status, err } = await run(['verify', 'strip.yaml', `--tolerance=${text}`])
       expect([text, status]).toEqual([text, 2])
-      expect(err).toContain('Expected a share above 0 and below 1')
+      expect(err).toContain('Expected a share of at least 1e-7 and below 1')
     }
   })
 

@@ -43,6 +43,7 @@ const verdict: Verdict = {
   settled: true,
   governing: 'relief',
   margin: 0.14336,
+  fixedOrder: null,
   tolerance: 0.001,
   units: { length: 'mm', force: 'kN', stress: 'MPa' },
   raisers: [relief, shoulder, sharp],
@@ -98,15 +99,23 @@ describe('the words', () => {
   })
 
   it('name the governing raiser with its margin, and a tie', () => {
-    expect(reportText(verdict, plain)).toContain('relief governs: its peak is 14 % above that of shoulder-1.')
-    expect(reportText({ ...verdict, margin: 1.1 }, plain)).toContain('its peak is 2.1 times that of shoulder-1.')
-    expect(reportText({ ...verdict, margin: 0 }, plain)).toContain('in a tie')
-    expect(reportText({ ...verdict, margin: null }, plain)).toContain('no other raiser has a finite peak')
+    const finite = { ...verdict, raisers: [relief, shoulder] }
+    expect(reportText(finite, plain)).toContain('relief governs: its peak is 14 % above that of shoulder-1.')
+    expect(reportText({ ...finite, margin: 1.1 }, plain)).toContain('its peak is 2.1 times that of shoulder-1.')
+    expect(reportText({ ...finite, margin: 0 }, plain)).toContain('in a tie')
+    expect(reportText({ ...finite, raisers: [relief], margin: null }, plain)).toContain('it is the only stress raiser')
+  })
+
+  it('name no governing raiser where another one has no bound', () => {
+    const text = reportText({ ...verdict, raisers: [relief, shoulder, sharp] }, plain)
+    expect(text).toContain('relief has the largest finite peak; the stress at shoulder-2 has no bound.')
+    expect(text).not.toContain('governs')
   })
 
   it('say whether it has settled and to what', () => {
     expect(reportText(verdict, plain)).toContain('Settled: every error bar is within the tolerance of 0.1 %.')
     expect(reportText({ ...verdict, settled: false }, plain)).toContain('NOT SETTLED to the tolerance of 0.1 %')
+    expect(reportText({ ...verdict, settled: false, fixedOrder: 4 }, plain)).toContain('Order 4 was fixed: the bars above are what it gives')
   })
 
   it('show checks, mesh, warnings, and end with the cautions', () => {

@@ -36,7 +36,15 @@ describe('warnings', () => {
     expect(warningsOf({ holes: [bore(10, 100)], material: { yield: 200 } })).toEqual([])
   })
 
-  it('a sharp corner is no place to compare the largest stress with', () => {
-    expect(warningsOf({ plate: { sections: [{ width: 60, length: 150 }, { width: 40, length: 150 }], fillets: [0] }, holes: [bore(10, 75)] })).toEqual([])
+  it('a sharp corner is named, and is no place to compare the largest stress with', () => {
+    const plate = { sections: [{ width: 60, length: 150 }, { width: 40, length: 150 }], fillets: [0] }
+    const named = expect.stringMatching(/^shoulder-1: a sharp re-entrant corner\. .* no bound and is above every peak/)
+    expect(warningsOf({ plate, holes: [bore(10, 75)] })).toEqual([named])
+    const bent = warningsOf({ plate, holes: [bore(6, 75)], load: { moment: 1e5 } })
+    expect(bent).toEqual([named, expect.stringMatching(/^apart from the sharp corners the largest stress, /)])
+  })
+
+  it('a nominal stress above yield is said too', () => {
+    expect(warningsOf({ holes: [bore(10, 100)], material: { yield: 60 } })).toEqual([expect.stringMatching(/the net nominal stress itself is 1\.11 times yield$/)])
   })
 })

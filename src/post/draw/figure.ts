@@ -202,16 +202,18 @@ function drawFoot(
   }
 }
 
-/** "relief governs: Kt 3.113 ± 0.002 net". */
-function findingWords({ units, settled, tolerance }: Verdict, governing: RaiserVerdict | null): string {
+/** "relief governs: Kt net 3.113 ± 0.002"; beside a sharp corner only "largest finite peak". */
+function findingWords({ units, settled, tolerance, raisers }: Verdict, governing: RaiserVerdict | null): string {
   if (!governing?.peak) return 'no stress raiser with a finite peak'
+  const sharp = raisers.filter(({ peak }) => peak === null).map(({ id }) => id)
+  const head = sharp.length === 0 ? `${governing.id} governs` : `stress at ${sharp.join(', ')} has no bound; of the others ${governing.id} leads`
   const short = settled ? '' : `, not settled to ${percent(tolerance)}`
   if (governing.kt) {
     const { value, bar } = withBar(governing.kt.net, governing.kt.error)
-    return `${governing.id} governs: Kt net ${value} ± ${bar}${short}`
+    return `${head}: Kt net ${value} ± ${bar}${short}`
   }
   const { value, bar } = withBar(governing.peak.stress, governing.peak.error)
-  return `${governing.id} governs: peak ${value} ± ${bar} ${units.stress}${short}`
+  return `${head}: peak ${value} ± ${bar} ${units.stress}${short}`
 }
 
 /** "axial 24 kN, moment 3 kN mm, thickness 8 mm". */

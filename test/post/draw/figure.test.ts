@@ -46,6 +46,7 @@ function verdictOf(raisers: RaiserVerdict[]): Verdict {
     settled: true,
     governing: raisers.length > 0 ? raisers[0].id : null,
     margin: null,
+    fixedOrder: null,
     tolerance: 0.001,
     units: { length: 'mm', force: 'kN', stress: 'MPa' },
     raisers,
