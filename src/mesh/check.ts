@@ -1,7 +1,7 @@
 // The invariants of a mesh, as code that the program runs on every mesh and the tests run on theirs.
 
 import { areaOf, pointOn, type Plate } from '../case/plate.ts'
-import { bulgesOf, mapPoint, triangleMap, type TriangleMap } from './map.ts'
+import { bulgesOf, mapPoint, elementMap, type ElementMap } from './map.ts'
 import { edgeUnder, nodeCount, sideCount, triangleCount, type Mesh } from './mesh.ts'
 import { gaussLegendre, type Rule } from './quadrature.ts'
 
@@ -45,7 +45,7 @@ export function checkMesh(plate: Plate, mesh: Mesh): MeshQuality {
   let smallestAngle = 180
   let worstJacobian = 1
   for (let t = 0; t < triangleCount(mesh); t++) {
-    const map = triangleMap(mesh, bulges, t)
+    const map = elementMap(mesh, bulges, t)
     smallestAngle = Math.min(smallestAngle, smallestAngleOf(map.corner))
     const { least, mean } = jacobians(map, rule)
     if (!(least > 0)) throw new MeshError(`triangle ${t} is turned inside out`)
@@ -96,7 +96,7 @@ function smallestAngleOf([x0, y0, x1, y1, x2, y2]: Float64Array): number {
 }
 
 /** Least and mean Jacobian; the mean, by Green's theorem along the sides, is twice the element's exact area. */
-function jacobians(map: TriangleMap, rule: Rule): { least: number; mean: number } {
+function jacobians(map: ElementMap, rule: Rule): { least: number; mean: number } {
   const [x0, y0, x1, y1, x2, y2] = map.corner
   const straight = (x1 - x0) * (y2 - y0) - (y1 - y0) * (x2 - x0)
   if (!map.curved) return { least: straight, mean: straight }
@@ -112,7 +112,7 @@ function jacobians(map: TriangleMap, rule: Rule): { least: number; mean: number 
 }
 
 /** Twice the area that the bulges add: the closed integral of x dy - y dx along each curved side less its chord's. */
-function bulgeArea(map: TriangleMap, rule: Rule): number {
+function bulgeArea(map: ElementMap, rule: Rule): number {
   const out = new Float64Array(6)
   let twice = 0
   for (let side = 0; side < 3; side++) {

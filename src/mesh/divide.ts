@@ -4,8 +4,13 @@ import { lengthOf, pointOn } from '../case/plate.ts'
 import type { Curve, Plate, Point } from '../case/plate.ts'
 import type { SizeField } from './size.ts'
 
-/** One piece of the boundary: from vertex a to vertex b with the material on the left, t0 to t1 on its edge's curve. */
+/**
+ * One piece of the line around what triangles have to fill: from vertex a to vertex b, what is to be filled on the left.
+ * It belongs to the part t0 .. t1 of an edge's curve.
+ */
 export interface Segment {
+  /** True where the piece itself lies on the edge; else it is straight and belongs to quads between it and the edge. */
+  readonly onEdge: boolean
   readonly a: number
   readonly b: number
   readonly loop: number
@@ -36,7 +41,7 @@ export function divideBoundary(plate: Plate, size: SizeField): DividedBoundary {
       for (let i = 1; i < cuts.length; i++) {
         const last = e === loop.length - 1 && i === cuts.length - 1
         const b = last ? first : addPoint(pointOn(curve, cuts[i]))
-        segments.push({ a, b, loop: l, edge: e, t0: cuts[i - 1], t1: cuts[i] })
+        segments.push({ onEdge: true, a, b, loop: l, edge: e, t0: cuts[i - 1], t1: cuts[i] })
         a = b
       }
     })

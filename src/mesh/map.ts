@@ -1,12 +1,14 @@
-// The map from the reference triangle to an element: straight, plus a bulge for each side that lies on an arc, exact.
-// Blending of W.J. Gordon, C.A. Hall, Numer. Math. 21 (1973) 109, in the smooth form for triangles of B. Szabo, I. Babuska,
-// Finite Element Analysis, 1991, ch. 6: X = sum Li Vi + sum over sides La Lb bulge(Lb - La),
-// where La Lb bulge(s) = curve(s) - chord(s) on the side itself, so bulge(s) = 4 (curve(s) - chord(s)) / (1 - s^2).
+// The map from a reference triangle or square to an element: straight, plus a bulge for each side that lies on an arc, exact.
+// Blending of W.J. Gordon, C.A. Hall, Numer. Math. 21 (1973) 109; for triangles in the smooth form of B. Szabo, I. Babuska,
+// Finite Element Analysis, 1991, ch. 6: X = sum Li Vi + sum over sides La Lb bulge(Lb - La); for quads
+// X = sum Ni Vi + sum over sides (1 - s^2) / 4 bulge(s) (1 - t) / 2, with s along the side and t across from it.
+// La Lb = (1 - s^2) / 4 on the side itself, and there bulge(s) = 4 (curve(s) - chord(s)) / (1 - s^2).
+// Reference triangle: (0,0), (1,0), (0,1); reference square: (-1,-1), (1,-1), (1,1), (-1,1).
 // Shape functions of order 1 and 2 cannot turn an exactly curved element without straining it: there the side is the chord, or the
 // parabola through the arc's middle, which is the plain isoparametric element.
 
 import { derivativeOn, pointOn, type Curve, type Plate, type Point } from '../case/plate.ts'
-import { edgeUnder, type Mesh } from './mesh.ts'
+import { edgeUnder, nodesOf, sidesOf, type Mesh } from './mesh.ts'
 
 /** Coefficients of the bulge as a polynomial in s, (x, y) interleaved, ascending powers. */
 export type Bulge = Float64Array
@@ -88,29 +90,37 @@ export function bulgesOf(plate: Plate, mesh: Mesh, order: number): (Bulge | null
   return Array.from({ length: count }, (_, b) => bulgeOf(edgeUnder(plate, mesh, b).curve, span[2 * b], span[2 * b + 1], order))
 }
 
-/** The map of one triangle: its corners and the bulges of its three sides. */
-export interface TriangleMap {
-  /** (x, y) of the three nodes. */
+/** The map of one element: its corners and the bulges of its sides. */
+export interface ElementMap {
+  /** (x, y) of the three or four nodes. */
   readonly corner: Float64Array
+  /** One a side; null where it is straight. */
   readonly bulge: readonly (Bulge | null)[]
   readonly curved: boolean
 }
 
-export function triangleMap(mesh: Mesh, bulges: readonly (Bulge | null)[], triangle: number): TriangleMap {
-  const corner = new Float64Array(6)
-  const bulge: (Bulge | null)[] = []
-  for (let k = 0; k < 3; k++) {
-    const node = mesh.triangle[3 * triangle + k]
+/** The map of an element (triangles first, then quads) with the bulges of the mesh's boundary sides. */
+export function elementMap(mesh: Mesh, bulges: readonly (Bulge | null)[], element: number): ElementMap {
+  const nodes = nodesOf(mesh, element)
+  const corner = new Float64Array(2 * nodes.length)
+  nodes.forEach((node, k) => {
     corner[2 * k] = mesh.point[2 * node]
     corner[2 * k + 1] = mesh.point[2 * node + 1]
-    const b = mesh.sideBoundary[mesh.triangleSide[3 * triangle + k]]
-    bulge.push(b < 0 ? null : bulges[b])
-  }
+  })
+  const bulge = Array.from(sidesOf(mesh, element), (side) => {
+    const b = mesh.sideBoundary[side]
+    return b < 0 ? null : bulges[b]
+  })
   return { corner, bulge, curved: bulge.some((side) => side !== null) }
 }
 
 /** Fills out with x, y, dx/dxi, dy/dxi, dx/deta, dy/deta at the reference point (xi, eta). */
-export function mapPoint({ corner, bulge, curved }: TriangleMap, xi: number, eta: number, out: Float64Array): void {
+export function mapPoint(map: ElementMap, xi: number, eta: number, out: Float64Array): void {
+  if (map.corner.length === 6) mapTriangle(map, xi, eta, out)
+  else mapQuad(map, xi, eta, out)
+}
+
+function mapTriangle({ corner, bulge, curved }: ElementMap, xi: number, eta: number, out: Float64Array): void {
   const [x0, y0, x1, y1, x2, y2] = corner
   out[0] = x0 + xi * (x1 - x0) + eta * (x2 - x0)
   out[1] = y0 + xi * (y1 - y0) + eta * (y2 - y0)
@@ -127,21 +137,60 @@ export function mapPoint({ corner, bulge, curved }: TriangleMap, xi: number, eta
     if (!coefficient) continue
     const a = side
     const b = (side + 1) % 3
-    const s = l[b] - l[a]
-    const product = l[a] * l[b]
-    const productXi = lXi[a] * l[b] + l[a] * lXi[b]
-    const productEta = lEta[a] * l[b] + l[a] * lEta[b]
-    for (let axis = 0; axis < 2; axis++) {
-      // Horner for the bulge and its slope
-      let value = 0
-      let slope = 0
-      for (let power = 2 * TERMS - 1; power >= 0; power--) {
-        slope = slope * s + value
-        value = value * s + coefficient[2 * power + axis]
-      }
-      out[axis] += product * value
-      out[2 + axis] += productXi * value + product * slope * (lXi[b] - lXi[a])
-      out[4 + axis] += productEta * value + product * slope * (lEta[b] - lEta[a])
+    const blend = l[a] * l[b]
+    const blendXi = lXi[a] * l[b] + l[a] * lXi[b]
+    const blendEta = lEta[a] * l[b] + l[a] * lEta[b]
+    addBulge(coefficient, l[b] - l[a], lXi[b] - lXi[a], lEta[b] - lEta[a], blend, blendXi, blendEta, out)
+  }
+}
+
+function mapQuad({ corner, bulge, curved }: ElementMap, xi: number, eta: number, out: Float64Array): void {
+  const [a, b, c, d] = [(1 - xi) / 2, (1 + xi) / 2, (1 - eta) / 2, (1 + eta) / 2]
+  for (let axis = 0; axis < 2; axis++) {
+    const [p, q, r, s] = [corner[axis], corner[2 + axis], corner[4 + axis], corner[6 + axis]]
+    out[axis] = c * (a * p + b * q) + d * (a * s + b * r)
+    out[2 + axis] = (c * (q - p) + d * (r - s)) / 2
+    out[4 + axis] = (a * (s - p) + b * (r - q)) / 2
+  }
+  if (!curved) return
+  for (let side = 0; side < 4; side++) {
+    const coefficient = bulge[side]
+    if (!coefficient) continue
+    // along the side s = xi, eta, -xi, -eta; across from it t = eta, -xi, -eta, xi
+    const alongXi = side % 2 === 0
+    const sense = side < 2 ? 1 : -1
+    const s = sense * (alongXi ? xi : eta)
+    const t = alongXi ? sense * eta : -sense * xi
+    const hump = (1 - s * s) / 4
+    const across = (1 - t) / 2
+    const byAlong = (-s / 2) * across * sense
+    const byAcross = (hump / 2) * (alongXi ? -sense : sense)
+    const [blendXi, blendEta] = alongXi ? [byAlong, byAcross] : [byAcross, byAlong]
+    addBulge(coefficient, s, alongXi ? sense : 0, alongXi ? 0 : sense, hump * across, blendXi, blendEta, out)
+  }
+}
+
+/** Adds blend * bulge(s) and its derivatives to `out`, in place; sXi and sEta are the derivatives of s. */
+function addBulge(
+  coefficient: Bulge,
+  s: number,
+  sXi: number,
+  sEta: number,
+  blend: number,
+  blendXi: number,
+  blendEta: number,
+  out: Float64Array
+): void {
+  for (let axis = 0; axis < 2; axis++) {
+    // Horner for the bulge and its slope
+    let value = 0
+    let slope = 0
+    for (let power = 2 * TERMS - 1; power >= 0; power--) {
+      slope = slope * s + value
+      value = value * s + coefficient[2 * power + axis]
     }
+    out[axis] += blend * value
+    out[2 + axis] += blendXi * value + blend * slope * sXi
+    out[4 + axis] += blendEta * value + blend * slope * sEta
   }
 }

@@ -58,6 +58,18 @@ export function elementCount(mesh: Mesh): number {
   return triangleCount(mesh) + quadCount(mesh)
 }
 
+/** Three or four nodes of an element (triangles first, then quads), counter-clockwise; a view into the mesh. */
+export function nodesOf(mesh: Mesh, element: number): Int32Array {
+  const quad = element - triangleCount(mesh)
+  return quad < 0 ? mesh.triangle.subarray(3 * element, 3 * element + 3) : mesh.quad.subarray(4 * quad, 4 * quad + 4)
+}
+
+/** Three or four sides of an element; side k runs from node k to node k + 1. A view into the mesh. */
+export function sidesOf(mesh: Mesh, element: number): Int32Array {
+  const quad = element - triangleCount(mesh)
+  return quad < 0 ? mesh.triangleSide.subarray(3 * element, 3 * element + 3) : mesh.quadSide.subarray(4 * quad, 4 * quad + 4)
+}
+
 /** The edge of the plate under boundary side b. */
 export function edgeUnder(plate: Plate, mesh: Mesh, b: number) {
   return plate.loops[mesh.boundary.loop[b]][mesh.boundary.edge[b]]

@@ -3,7 +3,7 @@
 // integrated once; curved ones are integrated by quadrature. The interior modes are eliminated densely (static condensation:
 // R.J. Guyan, AIAA J. 3 (1965) 380) and recovered afterwards. Plate units: E = 1, thickness = 1, plane stress.
 
-import { mapPoint, type TriangleMap } from '../mesh/map.ts'
+import { mapPoint, type ElementMap } from '../mesh/map.ts'
 import { triangleRule, type Rule } from '../mesh/quadrature.ts'
 import { fillTriangleShape, shapeScratch, triangleModes, type TriangleModes } from './shape.ts'
 
@@ -85,11 +85,11 @@ interface GradientProducts {
   readonly yy: Float64Array
 }
 
-function gradientProducts(reference: ReferenceTriangle, map: TriangleMap): GradientProducts {
+function gradientProducts(reference: ReferenceTriangle, map: ElementMap): GradientProducts {
   return map.curved ? curvedProducts(reference, map) : straightProducts(reference, map)
 }
 
-function straightProducts({ modes, xiXi, xiEta, etaEta }: ReferenceTriangle, { corner }: TriangleMap): GradientProducts {
+function straightProducts({ modes, xiXi, xiEta, etaEta }: ReferenceTriangle, { corner }: ElementMap): GradientProducts {
   const [x0, y0, x1, y1, x2, y2] = corner
   const jacobian = (x1 - x0) * (y2 - y0) - (y1 - y0) * (x2 - x0)
   // xi,x = (y2 - y0) / J and so on; one factor J of the area element cancels
@@ -116,7 +116,7 @@ function straightProducts({ modes, xiXi, xiEta, etaEta }: ReferenceTriangle, { c
   return { xx, xy, yy }
 }
 
-function curvedProducts({ modes, rule, byXi, byEta }: ReferenceTriangle, map: TriangleMap): GradientProducts {
+function curvedProducts({ modes, rule, byXi, byEta }: ReferenceTriangle, map: ElementMap): GradientProducts {
   const n = modes.count
   const xx = new Float64Array(n * n)
   const xy = new Float64Array(n * n)
@@ -174,7 +174,7 @@ function addGradients(
  */
 export function triangleStiffness(
   reference: ReferenceTriangle,
-  map: TriangleMap,
+  map: ElementMap,
   { d11, d12, d33 }: Elasticity,
   functions: Int32Array,
   sign: Float64Array

@@ -1,7 +1,7 @@
 // Displacement and stress anywhere in the plate, from the elements' own shape functions.
 
 import { outwardNormal, pointOn, type Plate } from '../case/plate.ts'
-import { bulgesOf, mapPoint, sideTangent, triangleMap, type TriangleMap } from '../mesh/map.ts'
+import { bulgesOf, mapPoint, sideTangent, elementMap, type ElementMap } from '../mesh/map.ts'
 import { edgeUnder, triangleCount, type Mesh } from '../mesh/mesh.ts'
 import { dofMap, triangleDofs, triangleSigns } from './dofs.ts'
 import { elasticity } from './element.ts'
@@ -29,16 +29,16 @@ export const FIELD = 7
  */
 export function fieldIn(solution: Solution, element: number, reference: Float64Array): Float64Array {
   const { plate, mesh } = solution
-  return fieldOn(solution, triangleMap(mesh, bulgesOf(plate, mesh, solution.order), element), element, reference)
+  return fieldOn(solution, elementMap(mesh, bulgesOf(plate, mesh, solution.order), element), element, reference)
 }
 
 /** A function like `fieldIn` for many elements of one solution. */
 export function fieldSampler(solution: Solution): (element: number, reference: Float64Array) => Float64Array {
   const bulges = bulgesOf(solution.plate, solution.mesh, solution.order)
-  return (element, reference) => fieldOn(solution, triangleMap(solution.mesh, bulges, element), element, reference)
+  return (element, reference) => fieldOn(solution, elementMap(solution.mesh, bulges, element), element, reference)
 }
 
-function fieldOn(solution: Solution, map: TriangleMap, element: number, reference: Float64Array): Float64Array {
+function fieldOn(solution: Solution, map: ElementMap, element: number, reference: Float64Array): Float64Array {
   const { plate, order } = solution
   const amplitude = amplitudesOf(solution, element)
   const n = amplitude.length / 2
@@ -141,7 +141,7 @@ export function stressAtPoint(solution: Solution, x: number, y: number): [number
   const bulges = bulgesOf(plate, mesh, solution.order)
   let best: { element: number; xi: number; eta: number; outside: number } | null = null
   for (let element = 0; element < triangleCount(mesh); element++) {
-    const map = triangleMap(mesh, bulges, element)
+    const map = elementMap(mesh, bulges, element)
     if (!nearBox(map, x, y)) continue
     const [xi, eta] = invertMap(map, x, y)
     const outside = Math.max(-xi, -eta, xi + eta - 1)
@@ -154,7 +154,7 @@ export function stressAtPoint(solution: Solution, x: number, y: number): [number
 }
 
 /** True when the point lies in the box of the corners, enlarged by its size (a bulge stays within it). */
-function nearBox({ corner }: TriangleMap, x: number, y: number): boolean {
+function nearBox({ corner }: ElementMap, x: number, y: number): boolean {
   const xs = [corner[0], corner[2], corner[4]]
   const ys = [corner[1], corner[3], corner[5]]
   const size = Math.max(Math.max(...xs) - Math.min(...xs), Math.max(...ys) - Math.min(...ys))
@@ -163,7 +163,7 @@ function nearBox({ corner }: TriangleMap, x: number, y: number): boolean {
   )
 }
 
-function invertMap(map: TriangleMap, x: number, y: number): [number, number] {
+function invertMap(map: ElementMap, x: number, y: number): [number, number] {
   const at = new Float64Array(6)
   let xi = 1 / 3
   let eta = 1 / 3

@@ -1,7 +1,7 @@
 // Mesh and order in, displacements out: condensed element matrices go straight into the sparse factorisation.
 
 import type { Plate } from '../case/plate.ts'
-import { bulgesOf, triangleMap } from '../mesh/map.ts'
+import { bulgesOf, elementMap } from '../mesh/map.ts'
 import { nodeCount, sideCount, triangleCount, type Mesh } from '../mesh/mesh.ts'
 import { dofMap, triangleDofs, triangleSigns, type DofMap } from './dofs.ts'
 import { condense, elasticity, recoverInner, referenceTriangle, triangleStiffness, type CondensedElement } from './element.ts'
@@ -45,7 +45,7 @@ function condensedElements(plate: Plate, mesh: Mesh, order: number): CondensedEl
   const moduli = elasticity(plate.nu)
   return Array.from({ length: triangleCount(mesh) }, (_, t) => {
     const sign = triangleSigns(mesh, order, count, t)
-    const stiffness = triangleStiffness(reference, triangleMap(mesh, bulges, t), moduli, functions, sign)
+    const stiffness = triangleStiffness(reference, elementMap(mesh, bulges, t), moduli, functions, sign)
     return condense(stiffness, 2 * count, 2 * outer.length)
   })
 }

@@ -1,20 +1,20 @@
 import { describe, expect, it } from 'vitest'
-import { bulgeOf, mapPoint, type TriangleMap } from '../../src/mesh/map.ts'
+import { bulgeOf, mapPoint, type ElementMap } from '../../src/mesh/map.ts'
 import { circularArc, pointOn } from '../../src/case/plate.ts'
 import { condense, elasticity, recoverInner, referenceTriangle, triangleStiffness } from '../../src/solve/element.ts'
 import { EigenvalueDecomposition, Matrix, solve } from 'ml-matrix'
 import { expectNear } from '../support/near.ts'
 
-const straight: TriangleMap = { corner: Float64Array.of(0.1, 0.2, 1.3, 0.4, 0.5, 1.6), bulge: [null, null, null], curved: false }
+const straight: ElementMap = { corner: Float64Array.of(0.1, 0.2, 1.3, 0.4, 0.5, 1.6), bulge: [null, null, null], curved: false }
 
 /** A triangle whose side 1 (from node 1 to node 2) is a quarter of a quarter circle about the origin, bulging inwards. */
-function curvedTriangle(order = 3): TriangleMap {
+function curvedTriangle(order = 3): ElementMap {
   const arc = circularArc([0, 0], 1, Math.PI / 3, -Math.PI / 6)
   const corner = Float64Array.of(1.2, 1.2, ...arc.from, ...arc.to)
   return { corner, bulge: [null, bulgeOf(arc, 0, 1, order), null], curved: true }
 }
 
-function stiffnessOf(order: number, map: TriangleMap, nu = 0.3) {
+function stiffnessOf(order: number, map: ElementMap, nu = 0.3) {
   const reference = referenceTriangle(order)
   const { count, outer, inner } = reference.modes
   const functions = Int32Array.from([...outer, ...inner])

@@ -3,7 +3,7 @@
 // curved edges come out curved. What is interpolated is the stress; colours come later.
 
 import { FIELD } from '../../solve/field.ts'
-import { elementCount, type Mesh, triangleCount } from '../../mesh/mesh.ts'
+import { elementCount, type Mesh, nodesOf } from '../../mesh/mesh.ts'
 import type { StressState } from '../principal.ts'
 import type { Coverage } from './coverage.ts'
 import type { View } from './view.ts'
@@ -44,7 +44,7 @@ export function paintField(plan: FieldPlan): PaintedField {
   let low = Infinity
   let high = -Infinity
   for (let element = 0; element < elementCount(mesh); element++) {
-    const nodes = cornersOf(mesh, element)
+    const nodes = nodesOf(mesh, element)
     const size = longestSide(mesh, nodes) * view.scale
     // fine enough for the pixels and for the order, but never below a pixel
     const parts = Math.max(1, Math.ceil(size / FACET), Math.min(order + 2, Math.ceil(size)))
@@ -148,13 +148,6 @@ function quadLattice(n: number): Lattice {
     }
   }
   return { reference: Float64Array.from(reference), facet: Int32Array.from(facet) }
-}
-
-/** Node numbers of an element, triangles first, then quads. */
-function cornersOf(mesh: Mesh, element: number): Int32Array {
-  const triangles = triangleCount(mesh)
-  if (element < triangles) return mesh.triangle.subarray(3 * element, 3 * element + 3)
-  return mesh.quad.subarray(4 * (element - triangles), 4 * (element - triangles) + 4)
 }
 
 /** Longest straight distance between neighbouring nodes, plate units. */

@@ -1,7 +1,7 @@
 import { describe, expect, it } from 'vitest'
 import type { Plate } from '../../../src/case/plate.ts'
 import { meshPlate } from '../../../src/mesh/build.ts'
-import { bulgesOf, mapPoint, triangleMap } from '../../../src/mesh/map.ts'
+import { bulgesOf, mapPoint, elementMap } from '../../../src/mesh/map.ts'
 import type { Mesh } from '../../../src/mesh/mesh.ts'
 import { coverPolygons } from '../../../src/post/draw/coverage.ts'
 import { extendField, paintField, type Sampler } from '../../../src/post/draw/field.ts'
@@ -23,7 +23,7 @@ function exactly(on: { plate: Plate; mesh: Mesh }, field: Field): Sampler {
   const bulges = bulgesOf(on.plate, on.mesh, Infinity)
   const at = new Float64Array(6)
   return (element, reference) => {
-    const map = triangleMap(on.mesh, bulges, element)
+    const map = elementMap(on.mesh, bulges, element)
     return Float64Array.from({ length: reference.length / 2 }, (_, i) => i).reduce((numbers, i) => {
       mapPoint(map, reference[2 * i], reference[2 * i + 1], at)
       numbers.set([at[0], at[1], 0, 0, ...field(at[0], at[1])], 7 * i)
