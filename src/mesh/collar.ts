@@ -51,13 +51,13 @@ export interface Collar {
 }
 
 /** Where the layers of a strip end, from the edge, in parts of its thickness: thin next to the edge. */
-export const LAYERS = [0.4, 1]
+export const LAYERS = [0.45, 1]
 /** Thickness of the strip in lengths of its pieces. */
-const THICKNESS = 0.8
+const THICKNESS = 1.8
 /** Largest thickness in radii of the largest circle that touches the edge there and fits into the material: a third of a gap. */
 const GAP_SHARE = 0.6
 /** Thickness of neighbouring rails differs by at most this part of their distance. */
-const SLOPE = 0.5
+const SLOPE = 1
 /** A strip whose first layer is thinner than this many sagittas of its arc, or that is thinner than this part of its length, gives way. */
 const LEAST_SAGITTAS = 2
 const LEAST_ASPECT = 0.12
@@ -66,7 +66,7 @@ const LYING = 50
 const STANDING = 112
 const REENTRANT = 200
 /** Longest column in thicknesses of the strip, and where the strip falls by a layer: tapers keep angles above 25 degrees. */
-const LONGEST = 2.5
+const LONGEST = 1.7
 const LONGEST_FALLING = 1.35
 /** Rounds of planning in which more and more columns give way; what is left then is dropped. */
 const ROUNDS = 30
@@ -108,8 +108,7 @@ export function planCollar(plate: Plate, boundary: DividedBoundary): Collar {
     const collar = layOut(plate, rings, point)
     if (!dropCrossing(rings, collar)) return collar
   }
-  for (const station of rings.flat()) station.wanted = false
-  return layOut(plate, rings, point)
+  return bareCollar(boundary)
 }
 
 /** No collar: triangles fill the plate up to its edges. */

@@ -1,6 +1,6 @@
-// Gauss-Legendre quadrature on [-1, 1] and the collapsed product rule on the reference triangle.
+// Gauss-Legendre quadrature on [-1, 1], its product on the square, and the collapsed product rule on the reference triangle.
 
-/** Nodes and weights of a rule; on the triangle `point` holds (xi, eta) a node. */
+/** Nodes and weights of a rule; on the triangle and the square `point` holds (xi, eta) a node. */
 export interface Rule {
   readonly point: Float64Array
   readonly weight: Float64Array
@@ -49,6 +49,22 @@ export function triangleRule(n: number): Rule {
       point[2 * at] = ((1 + line.point[i]) / 2) * (1 - eta)
       point[2 * at + 1] = eta
       weight[at++] = (line.weight[i] * line.weight[j] * (1 - eta)) / 4
+    }
+  }
+  return { point, weight }
+}
+
+/** Product rule with n x n nodes on the square [-1, 1] x [-1, 1], exact for degree 2n - 1 in each variable; weights sum to 4. */
+export function squareRule(n: number): Rule {
+  const line = gaussLegendre(n)
+  const point = new Float64Array(2 * n * n)
+  const weight = new Float64Array(n * n)
+  let at = 0
+  for (let j = 0; j < n; j++) {
+    for (let i = 0; i < n; i++) {
+      point[2 * at] = line.point[i]
+      point[2 * at + 1] = line.point[j]
+      weight[at++] = line.weight[i] * line.weight[j]
     }
   }
   return { point, weight }

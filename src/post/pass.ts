@@ -26,11 +26,11 @@ export interface Reading {
 
 /** Reads every raiser of a solution on mesh number `mesh`. */
 export function readRaisers(solution: Solution, mesh: number): Pass {
-  const { plate, order } = solution
+  const { plate, order, quadSpace } = solution
   return {
     mesh,
     order,
-    dof: dofMap(solution.mesh, order).all,
+    dof: dofMap(solution.mesh, order, quadSpace).all,
     raisers: plate.raisers.map((raiser, index) => (raiser.sharp === null ? readRaiser(solution, index) : null))
   }
 }

@@ -1,7 +1,10 @@
 // Which dofs an element has. Blocks of dofs: one a node (x and y), one a side (x and y of each mode of degree 2 .. order).
 // Node i has dofs 2i, 2i + 1; side s has 2 (order - 1) dofs from 2 nodes + 2 (order - 1) s on, degree by degree.
+// The dofs inside the elements follow, element by element: those of the triangles, then those of the quads.
 
-import { elementCount, nodeCount, sideCount, type Mesh } from '../mesh/mesh.ts'
+import { nodeCount, nodesOf, quadCount, sideCount, sidesOf, triangleCount, type Mesh } from '../mesh/mesh.ts'
+import { quadModes, QUAD_SPACE, type QuadSpace } from './quad.ts'
+import { triangleModes } from './shape.ts'
 
 export interface DofMap {
   readonly order: number
@@ -13,39 +16,57 @@ export interface DofMap {
   readonly firstSide: number
   /** Dofs a side. */
   readonly perSide: number
+  /** Triangles in the mesh: the number of the first quad. */
+  readonly triangles: number
+  /** Dofs inside each triangle and inside each quad. */
+  readonly perTriangle: number
+  readonly perQuad: number
 }
 
-export function dofMap(mesh: Mesh, order: number): DofMap {
+export function dofMap(mesh: Mesh, order: number, space: QuadSpace = QUAD_SPACE): DofMap {
   const perSide = 2 * (order - 1)
   const firstSide = 2 * nodeCount(mesh)
   const outer = firstSide + perSide * sideCount(mesh)
-  return { order, outer, all: outer + elementCount(mesh) * (order - 1) * Math.max(0, order - 2), firstSide, perSide }
+  const triangles = triangleCount(mesh)
+  const perTriangle = 2 * triangleModes(order).inner.length
+  const perQuad = 2 * quadModes(order, space).inner.length
+  const all = outer + perTriangle * triangles + perQuad * quadCount(mesh)
+  return { order, outer, all, firstSide, perSide, triangles, perTriangle, perQuad }
 }
 
-/** Outer dofs of a triangle: nodes 0 1 2, then sides 0 1 2 (6 order numbers). */
-export function triangleDofs(mesh: Mesh, { order, firstSide, perSide }: DofMap, triangle: number): Int32Array {
-  const dofs = new Int32Array(6 * order)
-  for (let k = 0; k < 3; k++) {
-    const node = mesh.triangle[3 * triangle + k]
-    dofs[2 * k] = 2 * node
-    dofs[2 * k + 1] = 2 * node + 1
-    const first = firstSide + perSide * mesh.triangleSide[3 * triangle + k]
-    for (let d = 0; d < perSide; d++) dofs[6 + k * perSide + d] = first + d
+/** First of the dofs inside an element. */
+export function firstInner({ outer, triangles, perTriangle, perQuad }: DofMap, element: number): number {
+  const quad = element - triangles
+  return quad < 0 ? outer + perTriangle * element : outer + perTriangle * triangles + perQuad * quad
+}
+
+/** Outer dofs of an element: nodes 0 1 2 (3), then sides 0 1 2 (3); 6 order numbers for a triangle, 8 order for a quad. */
+export function elementDofs(mesh: Mesh, { order, firstSide, perSide }: DofMap, element: number): Int32Array {
+  const nodes = nodesOf(mesh, element)
+  const sides = sidesOf(mesh, element)
+  const corners = nodes.length
+  const dofs = new Int32Array(2 * corners * order)
+  for (let k = 0; k < corners; k++) {
+    dofs[2 * k] = 2 * nodes[k]
+    dofs[2 * k + 1] = 2 * nodes[k] + 1
+    const first = firstSide + perSide * sides[k]
+    for (let d = 0; d < perSide; d++) dofs[2 * corners + k * perSide + d] = first + d
   }
   return dofs
 }
 
 /**
- * Signs of a triangle's shape functions in the order outer, inner: a side mode of odd degree is -1 where the element runs
+ * Signs of an element's shape functions in the order outer, inner: a side mode of odd degree is -1 where the element runs
  * along the side from its higher to its lower node.
+ * @param functions how many it has
  */
-export function triangleSigns(mesh: Mesh, order: number, functions: number, triangle: number): Float64Array {
+export function elementSigns(mesh: Mesh, order: number, functions: number, element: number): Float64Array {
+  const nodes = nodesOf(mesh, element)
+  const corners = nodes.length
   const sign = new Float64Array(functions).fill(1)
-  for (let k = 0; k < 3; k++) {
-    const a = mesh.triangle[3 * triangle + k]
-    const b = mesh.triangle[3 * triangle + ((k + 1) % 3)]
-    if (a < b) continue
-    for (let degree = 3; degree <= order; degree += 2) sign[3 + k * (order - 1) + degree - 2] = -1
+  for (let k = 0; k < corners; k++) {
+    if (nodes[k] < nodes[(k + 1) % corners]) continue
+    for (let degree = 3; degree <= order; degree += 2) sign[corners + k * (order - 1) + degree - 2] = -1
   }
   return sign
 }

@@ -1,11 +1,13 @@
-// Stiffness of a triangle of any order, condensed onto its nodes and sides.
+// Stiffness of a triangle or quad of any order, condensed onto its nodes and sides.
 // Straight triangles have a constant Jacobian, so their stiffness is a combination of three reference matrices that are
-// integrated once; curved ones are integrated by quadrature. The interior modes are eliminated densely (static condensation:
-// R.J. Guyan, AIAA J. 3 (1965) 380) and recovered afterwards. Plate units: E = 1, thickness = 1, plane stress.
+// integrated once; curved ones and all quads are integrated by quadrature. The interior modes are eliminated densely (static
+// condensation: R.J. Guyan, AIAA J. 3 (1965) 380) and recovered afterwards. Plate units: E = 1, thickness = 1, plane stress.
 
-import { mapPoint, type ElementMap } from '../mesh/map.ts'
-import { triangleRule, type Rule } from '../mesh/quadrature.ts'
-import { fillTriangleShape, shapeScratch, triangleModes, type TriangleModes } from './shape.ts'
+import type { ElementMap } from '../mesh/map.ts'
+import { squareRule, triangleRule } from '../mesh/quadrature.ts'
+import { integrateGradients, tabulate, type GradientProducts, type ShapeTable } from './gradient.ts'
+import { quadShape, type QuadSpace } from './quad.ts'
+import { triangleShape, type ElementModes } from './shape.ts'
 
 /** Plane-stress elasticity for E = 1: sxx = d11 exx + d12 eyy, sxy = d33 gxy (S. Timoshenko, J.N. Goodier, art. 6). */
 export interface Elasticity {
@@ -20,45 +22,61 @@ export function elasticity(nu: number): Elasticity {
 
 /** All that is the same for every triangle of one order. */
 export interface ReferenceTriangle {
-  readonly modes: TriangleModes
+  readonly modes: ElementModes
   /** Integrals over the reference triangle of the products of derivatives, count x count, row by row. */
   readonly xiXi: Float64Array
   readonly xiEta: Float64Array
   readonly etaEta: Float64Array
-  /** For curved triangles: a finer rule and the derivatives of the functions at its points, count numbers a point. */
-  readonly rule: Rule
-  readonly byXi: Float64Array
-  readonly byEta: Float64Array
+  /** For curved triangles. */
+  readonly table: ShapeTable
+}
+
+/** All that is the same for every quad of one order. */
+export interface ReferenceQuad {
+  readonly modes: ElementModes
+  readonly straight: ShapeTable
+  readonly curved: ShapeTable
 }
 
 /** Quadrature points beyond the order, a direction, for curved triangles: their integrand is rational, not polynomial. */
 const EXTRA_POINTS = 4
 
+/**
+ * The same for quads. On a parallelogram order + 1 points are exact. On any other quad the Jacobian divides a polynomial, and
+ * each further point cuts the error of the integrals by a ratio that the Jacobian's nearest zero sets. Against 14 further
+ * points, in share of the order's own error in stress (orders 1 to 10): distorted straight quads up to 5 %, and a tenth where
+ * an angle is almost 180 degrees (both at order 1); quads between an arc of 45 degrees and a chord close to it less than 1 %,
+ * evenly thick ones less than 0.1 %.
+ */
+const EXTRA_POINTS_STRAIGHT_QUAD = 2
+const EXTRA_POINTS_CURVED_QUAD = 3
+
 export function referenceTriangle(order: number): ReferenceTriangle {
-  const modes = triangleModes(order)
-  const { count } = modes
-  const rule = triangleRule(order + EXTRA_POINTS)
-  const points = rule.weight.length
-  const byXi = new Float64Array(points * count)
-  const byEta = new Float64Array(points * count)
-  const value = new Float64Array(points * count)
-  const scratch = shapeScratch(order)
-  for (let q = 0; q < points; q++) {
-    fillTriangleShape(order, rule.point[2 * q], rule.point[2 * q + 1], scratch, value, byXi, byEta, q * count)
-  }
+  const shape = triangleShape(order)
+  const { count } = shape.modes
+  const table = tabulate(shape, triangleRule(order + EXTRA_POINTS))
+  const { rule, byXi, byEta } = table
   const integrate = (a: Float64Array, b: Float64Array) => {
     const product = new Float64Array(count * count)
-    for (let q = 0; q < points; q++) addOuterProduct(product, a, b, q * count, count, rule.weight[q])
+    for (let q = 0; q < rule.weight.length; q++) addOuterProduct(product, a, b, q * count, count, rule.weight[q])
     return product
   }
   return {
-    modes,
+    modes: shape.modes,
     xiXi: integrate(byXi, byXi),
     xiEta: integrate(byXi, byEta),
     etaEta: integrate(byEta, byEta),
-    rule,
-    byXi,
-    byEta
+    table
+  }
+}
+
+/** @param space which interior functions, the usual ones if left out */
+export function referenceQuad(order: number, space?: QuadSpace): ReferenceQuad {
+  const shape = quadShape(order, space)
+  return {
+    modes: shape.modes,
+    straight: tabulate(shape, squareRule(order + EXTRA_POINTS_STRAIGHT_QUAD)),
+    curved: tabulate(shape, squareRule(order + EXTRA_POINTS_CURVED_QUAD))
   }
 }
 
@@ -76,17 +94,6 @@ function addOuterProduct(
     const row = i * count
     for (let j = 0; j < count; j++) matrix[row + j] += factor * b[offset + j]
   }
-}
-
-/** Gradient products of one triangle: the integrals of Ni,x Nj,x, Ni,x Nj,y and Ni,y Nj,y, count x count each. */
-interface GradientProducts {
-  readonly xx: Float64Array
-  readonly xy: Float64Array
-  readonly yy: Float64Array
-}
-
-function gradientProducts(reference: ReferenceTriangle, map: ElementMap): GradientProducts {
-  return map.curved ? curvedProducts(reference, map) : straightProducts(reference, map)
 }
 
 function straightProducts({ modes, xiXi, xiEta, etaEta }: ReferenceTriangle, { corner }: ElementMap): GradientProducts {
@@ -116,58 +123,6 @@ function straightProducts({ modes, xiXi, xiEta, etaEta }: ReferenceTriangle, { c
   return { xx, xy, yy }
 }
 
-function curvedProducts({ modes, rule, byXi, byEta }: ReferenceTriangle, map: ElementMap): GradientProducts {
-  const n = modes.count
-  const xx = new Float64Array(n * n)
-  const xy = new Float64Array(n * n)
-  const yy = new Float64Array(n * n)
-  const at = new Float64Array(6)
-  const gx = new Float64Array(n)
-  const gy = new Float64Array(n)
-  for (let q = 0; q < rule.weight.length; q++) {
-    mapPoint(map, rule.point[2 * q], rule.point[2 * q + 1], at)
-    const jacobian = at[2] * at[5] - at[3] * at[4]
-    const offset = q * n
-    for (let i = 0; i < n; i++) {
-      const a = byXi[offset + i]
-      const b = byEta[offset + i]
-      gx[i] = (at[5] * a - at[3] * b) / jacobian
-      gy[i] = (at[2] * b - at[4] * a) / jacobian
-    }
-    addGradients(xx, xy, yy, gx, gy, n, rule.weight[q] * jacobian)
-  }
-  for (let i = 0; i < n; i++) {
-    for (let j = 0; j < i; j++) {
-      xx[j * n + i] = xx[i * n + j]
-      yy[j * n + i] = yy[i * n + j]
-    }
-  }
-  return { xx, xy, yy }
-}
-
-/** Adds weight * gradient products, in place; of the symmetric xx and yy the lower triangles only. */
-function addGradients(
-  xx: Float64Array,
-  xy: Float64Array,
-  yy: Float64Array,
-  gx: Float64Array,
-  gy: Float64Array,
-  n: number,
-  weight: number
-): void {
-  for (let i = 0; i < n; i++) {
-    const x = weight * gx[i]
-    const y = weight * gy[i]
-    const row = i * n
-    for (let j = 0; j <= i; j++) {
-      xx[row + j] += x * gx[j]
-      xy[row + j] += x * gy[j]
-      yy[row + j] += y * gy[j]
-    }
-    for (let j = i + 1; j < n; j++) xy[row + j] += x * gy[j]
-  }
-}
-
 /**
  * Full stiffness of a triangle, square, row by row, size 2 count: dof 2i, 2i + 1 are the x and y amplitudes of
  * `functions[i]`, each multiplied by `sign[i]` (side modes of odd degree turn their sign with the side's direction).
@@ -175,11 +130,32 @@ function addGradients(
 export function triangleStiffness(
   reference: ReferenceTriangle,
   map: ElementMap,
+  moduli: Elasticity,
+  functions: Int32Array,
+  sign: Float64Array
+): Float64Array {
+  const products = map.curved ? integrateGradients(reference.table, map) : straightProducts(reference, map)
+  return stiffnessOf(products, moduli, functions, sign)
+}
+
+/** Full stiffness of a quad, like that of a triangle. */
+export function quadStiffness(
+  reference: ReferenceQuad,
+  map: ElementMap,
+  moduli: Elasticity,
+  functions: Int32Array,
+  sign: Float64Array
+): Float64Array {
+  const products = integrateGradients(map.curved ? reference.curved : reference.straight, map)
+  return stiffnessOf(products, moduli, functions, sign)
+}
+
+function stiffnessOf(
+  { xx, xy, yy }: GradientProducts,
   { d11, d12, d33 }: Elasticity,
   functions: Int32Array,
   sign: Float64Array
 ): Float64Array {
-  const { xx, xy, yy } = gradientProducts(reference, map)
   const n = functions.length
   const size = 2 * n
   const stiffness = new Float64Array(size * size)

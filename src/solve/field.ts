@@ -2,10 +2,11 @@
 
 import { outwardNormal, pointOn, type Plate } from '../case/plate.ts'
 import { bulgesOf, mapPoint, sideTangent, elementMap, type ElementMap } from '../mesh/map.ts'
-import { edgeUnder, triangleCount, type Mesh } from '../mesh/mesh.ts'
-import { dofMap, triangleDofs, triangleSigns } from './dofs.ts'
+import { edgeUnder, elementCount, nodesOf, type Mesh } from '../mesh/mesh.ts'
+import { dofMap, elementDofs, elementSigns, firstInner } from './dofs.ts'
 import { elasticity } from './element.ts'
-import { fillTriangleShape, shapeScratch, triangleModes } from './shape.ts'
+import { quadShape, type QuadSpace } from './quad.ts'
+import { triangleShape, type ElementModes } from './shape.ts'
 import { sideDofs, sideFunctions } from './side.ts'
 
 /** The solved plate. Plate units: E = 1, thickness 1; stresses times `plate.unit.stress` are MPa. */
@@ -13,7 +14,9 @@ export interface Solution {
   readonly plate: Plate
   readonly mesh: Mesh
   readonly order: number
-  /** All amplitudes: the outer dofs (see dofs.ts), then (order - 1)(order - 2) inner ones an element. */
+  /** The interior functions of the quads, the usual ones if left out. */
+  readonly quadSpace?: QuadSpace
+  /** All amplitudes: the outer dofs, then those inside each element (see dofs.ts). */
   readonly coefficient: Float64Array
   /** |Ku - f| / (|K| |u| + |f|) of the condensed system, maximum norms. */
   readonly residual: number
@@ -39,19 +42,19 @@ export function fieldSampler(solution: Solution): (element: number, reference: F
 }
 
 function fieldOn(solution: Solution, map: ElementMap, element: number, reference: Float64Array): Float64Array {
-  const { plate, order } = solution
-  const amplitude = amplitudesOf(solution, element)
-  const n = amplitude.length / 2
+  const { plate, order, quadSpace } = solution
+  const { modes, fill } = map.corner.length === 6 ? triangleShape(order) : quadShape(order, quadSpace)
+  const amplitude = amplitudesOf(solution, modes, element)
+  const n = modes.count
   const { d11, d12, d33 } = elasticity(plate.nu)
   const value = new Float64Array(n)
   const byXi = new Float64Array(n)
   const byEta = new Float64Array(n)
   const at = new Float64Array(6)
-  const scratch = shapeScratch(order)
   const points = reference.length / 2
   const field = new Float64Array(FIELD * points)
   for (let q = 0; q < points; q++) {
-    fillTriangleShape(order, reference[2 * q], reference[2 * q + 1], scratch, value, byXi, byEta)
+    fill(reference[2 * q], reference[2 * q + 1], value, byXi, byEta)
     mapPoint(map, reference[2 * q], reference[2 * q + 1], at)
     let [ux, uy, uxXi, uxEta, uyXi, uyEta] = [0, 0, 0, 0, 0, 0]
     for (let i = 0; i < n; i++) {
@@ -74,21 +77,22 @@ function fieldOn(solution: Solution, map: ElementMap, element: number, reference
   return field
 }
 
-/** Amplitudes (x, y interleaved) of a triangle's shape functions, in the order of `fillTriangleShape`. */
-function amplitudesOf({ mesh, order, coefficient }: Solution, element: number): Float64Array {
-  const dofs = dofMap(mesh, order)
-  const { count, outer, inner } = triangleModes(order)
-  const sign = triangleSigns(mesh, order, count, element)
-  const dof = triangleDofs(mesh, dofs, element)
+/** Amplitudes (x, y interleaved) of an element's shape functions, in the order of its `ElementShape.fill`. */
+function amplitudesOf(
+  { mesh, order, quadSpace, coefficient }: Solution, { count, outer, inner }: ElementModes, element: number
+): Float64Array {
+  const dofs = dofMap(mesh, order, quadSpace)
+  const sign = elementSigns(mesh, order, count, element)
+  const dof = elementDofs(mesh, dofs, element)
   const amplitude = new Float64Array(2 * count)
   outer.forEach((f, i) => {
     amplitude[2 * f] = sign[i] * coefficient[dof[2 * i]]
     amplitude[2 * f + 1] = sign[i] * coefficient[dof[2 * i + 1]]
   })
-  const firstInner = dofs.outer + 2 * inner.length * element
+  const first = firstInner(dofs, element)
   inner.forEach((f, i) => {
-    amplitude[2 * f] = coefficient[firstInner + 2 * i]
-    amplitude[2 * f + 1] = coefficient[firstInner + 2 * i + 1]
+    amplitude[2 * f] = coefficient[first + 2 * i]
+    amplitude[2 * f + 1] = coefficient[first + 2 * i + 1]
   })
   return amplitude
 }
@@ -123,9 +127,10 @@ export function edgeStress({ plate, mesh, order, coefficient }: Solution, b: num
 
 /** Reference points on boundary side b of its element, (xi, eta) interleaved, for s in [-1, 1] in the boundary's sense. */
 export function sideReference(mesh: Mesh, b: number, s: ArrayLike<number>): Float64Array {
-  const corner = [0, 0, 1, 0, 0, 1]
+  const corners = nodesOf(mesh, mesh.boundary.element[b]).length
+  const corner = corners === 3 ? [0, 0, 1, 0, 0, 1] : [-1, -1, 1, -1, 1, 1, -1, 1]
   const from = mesh.boundary.local[b]
-  const to = (from + 1) % 3
+  const to = (from + 1) % corners
   const reference = new Float64Array(2 * s.length)
   for (let q = 0; q < s.length; q++) {
     for (let axis = 0; axis < 2; axis++) {
@@ -140,11 +145,14 @@ export function stressAtPoint(solution: Solution, x: number, y: number): [number
   const { plate, mesh } = solution
   const bulges = bulgesOf(plate, mesh, solution.order)
   let best: { element: number; xi: number; eta: number; outside: number } | null = null
-  for (let element = 0; element < triangleCount(mesh); element++) {
+  for (let element = 0; element < elementCount(mesh); element++) {
     const map = elementMap(mesh, bulges, element)
     if (!nearBox(map, x, y)) continue
-    const [xi, eta] = invertMap(map, x, y)
-    const outside = Math.max(-xi, -eta, xi + eta - 1)
+    const found = invertMap(map, x, y)
+    if (!found) continue
+    const [xi, eta] = found
+    const triangular = map.corner.length === 6
+    const outside = triangular ? Math.max(-xi, -eta, xi + eta - 1) : Math.max(Math.abs(xi), Math.abs(eta)) - 1
     if (!best || outside < best.outside) best = { element, xi, eta, outside }
   }
   // a point on the edge may fall outside by rounding
@@ -155,30 +163,32 @@ export function stressAtPoint(solution: Solution, x: number, y: number): [number
 
 /** True when the point lies in the box of the corners, enlarged by its size (a bulge stays within it). */
 function nearBox({ corner }: ElementMap, x: number, y: number): boolean {
-  const xs = [corner[0], corner[2], corner[4]]
-  const ys = [corner[1], corner[3], corner[5]]
+  const xs = corner.filter((_, i) => i % 2 === 0)
+  const ys = corner.filter((_, i) => i % 2 === 1)
   const size = Math.max(Math.max(...xs) - Math.min(...xs), Math.max(...ys) - Math.min(...ys))
   return (
     x >= Math.min(...xs) - size && x <= Math.max(...xs) + size && y >= Math.min(...ys) - size && y <= Math.max(...ys) + size
   )
 }
 
-function invertMap(map: ElementMap, x: number, y: number): [number, number] {
+/** The reference point (xi, eta) of a point by Newton's method from the middle, null where that runs away (outside only). */
+function invertMap(map: ElementMap, x: number, y: number): [number, number] | null {
   const at = new Float64Array(6)
-  let xi = 1 / 3
-  let eta = 1 / 3
+  const middle = map.corner.length === 6 ? 1 / 3 : 0
+  let xi = middle
+  let eta = middle
   for (let step = 0; step < 30; step++) {
     mapPoint(map, xi, eta, at)
     const rx = x - at[0]
     const ry = y - at[1]
     const jacobian = at[2] * at[5] - at[3] * at[4]
-    if (!(Math.abs(jacobian) > 0)) return [-1, -1]
+    if (!(Math.abs(jacobian) > 0)) return null
     const dXi = (at[5] * rx - at[4] * ry) / jacobian
     const dEta = (at[2] * ry - at[3] * rx) / jacobian
     xi += dXi
     eta += dEta
     if (Math.abs(dXi) + Math.abs(dEta) < 1e-14) break
-    if (Math.abs(xi) + Math.abs(eta) > 10) return [-1, -1]
+    if (Math.abs(xi) + Math.abs(eta) > 10) return null
   }
   return [xi, eta]
 }

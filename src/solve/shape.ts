@@ -10,27 +10,57 @@ export function triangleFunctionCount(order: number): number {
   return ((order + 1) * (order + 2)) / 2
 }
 
-/** Where each shape function of a triangle belongs. */
-export interface TriangleModes {
+/** Where each shape function of an element belongs. */
+export interface ElementModes {
   readonly order: number
   readonly count: number
-  /** Functions on nodes and sides in the order of the condensed element: nodes 0 1 2, side 0 by degree, side 1, side 2. */
+  /** Functions on nodes and sides in the order of the condensed element: nodes 0 1 2 (3), side 0 by degree, side 1, ... */
   readonly outer: Int32Array
   /** Interior functions, by degree. */
   readonly inner: Int32Array
 }
 
-/** The index lists that split the shape functions of a triangle into outer and inner ones. */
-export function triangleModes(order: number): TriangleModes {
-  const outer = new Int32Array(3 * order)
+/** The shape functions of one kind of element at one order. */
+export interface ElementShape {
+  readonly modes: ElementModes
+  /**
+   * Fills the values and the derivatives by xi and eta of all functions at the reference point (xi, eta), in place:
+   * `modes.count` numbers of each array from `offset` on.
+   */
+  readonly fill: (
+    xi: number, eta: number, value: Float64Array, byXi: Float64Array, byEta: Float64Array, offset?: number
+  ) => void
+}
+
+/**
+ * The index lists that split the shape functions of an element into outer and inner ones: vertices, then for each degree
+ * k = 2 .. order one mode a side and as many interior ones as `innerOfDegree(k)` says.
+ * @param corners 3 or 4, the number of nodes and of sides
+ */
+export function modesByDegree(order: number, corners: number, innerOfDegree: (degree: number) => number): ElementModes {
+  const outer = new Int32Array(corners * order)
   const inner: number[] = []
-  for (let node = 0; node < 3; node++) outer[node] = node
-  let next = 3
+  for (let node = 0; node < corners; node++) outer[node] = node
+  let next = corners
   for (let degree = 2; degree <= order; degree++) {
-    for (let side = 0; side < 3; side++) outer[3 + side * (order - 1) + degree - 2] = next++
-    for (let j = 0; j < degree - 2; j++) inner.push(next++)
+    for (let side = 0; side < corners; side++) outer[corners + side * (order - 1) + degree - 2] = next++
+    for (let j = 0; j < innerOfDegree(degree); j++) inner.push(next++)
   }
   return { order, count: next, outer, inner: Int32Array.from(inner) }
+}
+
+/** The index lists of a triangle: degree k has k - 2 interior functions. */
+export function triangleModes(order: number): ElementModes {
+  return modesByDegree(order, 3, (degree) => degree - 2)
+}
+
+/** The shape functions of a triangle. */
+export function triangleShape(order: number): ElementShape {
+  const scratch = shapeScratch(order)
+  return {
+    modes: triangleModes(order),
+    fill: (xi, eta, value, byXi, byEta, offset) => fillTriangleShape(order, xi, eta, scratch, value, byXi, byEta, offset)
+  }
 }
 
 /**

@@ -2,7 +2,7 @@
 // On a side with s from -1 to 1 the functions are (1 - s) / 2, (1 + s) / 2 and, for degree k = 2 .. order, the integrated
 // Legendre polynomial (1 - s^2) / 4 times the side kernel, whose slope is -sqrt((2k - 1) / 2) P_{k-1}(s).
 
-import type { Mesh } from '../mesh/mesh.ts'
+import { nodesOf, type Mesh } from '../mesh/mesh.ts'
 import type { DofMap } from './dofs.ts'
 import { fillSideKernels } from './shape.ts'
 
@@ -39,8 +39,9 @@ export interface SideDofs {
 
 export function sideDofs(mesh: Mesh, { order, firstSide, perSide }: DofMap, b: number): SideDofs {
   const { element, local, side } = mesh.boundary
-  const from = mesh.triangle[3 * element[b] + local[b]]
-  const to = mesh.triangle[3 * element[b] + ((local[b] + 1) % 3)]
+  const nodes = nodesOf(mesh, element[b])
+  const from = nodes[local[b]]
+  const to = nodes[(local[b] + 1) % nodes.length]
   const dof = new Int32Array(order + 1)
   const sign = new Float64Array(order + 1).fill(1)
   dof[0] = 2 * from

@@ -2,22 +2,27 @@
 
 import type { Plate } from '../case/plate.ts'
 import { bulgesOf, elementMap } from '../mesh/map.ts'
-import { nodeCount, sideCount, triangleCount, type Mesh } from '../mesh/mesh.ts'
-import { dofMap, triangleDofs, triangleSigns, type DofMap } from './dofs.ts'
-import { condense, elasticity, recoverInner, referenceTriangle, triangleStiffness, type CondensedElement } from './element.ts'
+import { elementCount, nodeCount, nodesOf, sideCount, sidesOf, triangleCount, type Mesh } from '../mesh/mesh.ts'
+import { dofMap, elementDofs, elementSigns, firstInner, type DofMap } from './dofs.ts'
+import {
+  condense, elasticity, quadStiffness, recoverInner, referenceQuad, referenceTriangle, triangleStiffness, type CondensedElement
+} from './element.ts'
 import type { Solution } from './field.ts'
 import { imbalance, loadVector } from './load.ts'
+import { QUAD_SPACE, type QuadSpace } from './quad.ts'
+import type { ElementModes } from './shape.ts'
 import { analyse, factorise, solveRefined, type CliqueGraph } from './sparse/index.ts'
 
 /**
  * Displacements of the plate under its tractions, at one order on one mesh.
  * The tractions balance, so three supports take the rigid-body motions away without a reaction; that is checked.
+ * @param quadSpace the interior functions of quads
  * @throws Error when the plate falls apart (a bug: a mesh of one piece does not)
  */
-export function solvePlate(plate: Plate, mesh: Mesh, order: number): Solution {
-  const dofs = dofMap(mesh, order)
+export function solvePlate(plate: Plate, mesh: Mesh, order: number, quadSpace: QuadSpace = QUAD_SPACE): Solution {
+  const dofs = dofMap(mesh, order, quadSpace)
   const load = loadVector(plate, mesh, dofs)
-  const elements = condensedElements(plate, mesh, order)
+  const elements = condensedElements(plate, mesh, order, quadSpace)
   const graph = cliqueGraph(mesh, dofs)
   const fixed = rigidSupports(mesh, dofs)
   const symbolic = analyse(graph)
@@ -27,46 +32,54 @@ export function solvePlate(plate: Plate, mesh: Mesh, order: number): Solution {
 
   const coefficient = new Float64Array(dofs.all)
   coefficient.set(x)
-  let next = dofs.outer
-  for (let t = 0; t < triangleCount(mesh); t++) {
-    const own = Float64Array.from(triangleDofs(mesh, dofs, t), (dof) => x[dof])
-    const inner = recoverInner(elements[t], own)
-    coefficient.set(inner, next)
-    next += inner.length
-  }
-  return { plate, mesh, order, coefficient, residual, balance: Math.max(imbalance(plate), reaction(mesh, dofs, elements, fixed, x, load)) }
+  elements.forEach((element, e) => {
+    const own = Float64Array.from(elementDofs(mesh, dofs, e), (dof) => x[dof])
+    coefficient.set(recoverInner(element, own), firstInner(dofs, e))
+  })
+  const balance = Math.max(imbalance(plate), reaction(mesh, dofs, elements, fixed, x, load))
+  return { plate, mesh, order, quadSpace, coefficient, residual, balance }
 }
 
-function condensedElements(plate: Plate, mesh: Mesh, order: number): CondensedElement[] {
-  const reference = referenceTriangle(order)
-  const { count, outer, inner } = reference.modes
-  const functions = Int32Array.from([...outer, ...inner])
+/** The condensed stiffness of every element, triangles first, then quads. */
+function condensedElements(plate: Plate, mesh: Mesh, order: number, quadSpace: QuadSpace): CondensedElement[] {
+  const triangle = referenceTriangle(order)
+  const quad = referenceQuad(order, quadSpace)
+  const triangleFunctions = outerThenInner(triangle.modes)
+  const quadFunctions = outerThenInner(quad.modes)
   const bulges = bulgesOf(plate, mesh, order)
   const moduli = elasticity(plate.nu)
-  return Array.from({ length: triangleCount(mesh) }, (_, t) => {
-    const sign = triangleSigns(mesh, order, count, t)
-    const stiffness = triangleStiffness(reference, elementMap(mesh, bulges, t), moduli, functions, sign)
+  const triangles = triangleCount(mesh)
+  return Array.from({ length: elementCount(mesh) }, (_, e) => {
+    const map = elementMap(mesh, bulges, e)
+    const { count, outer } = (e < triangles ? triangle : quad).modes
+    const sign = elementSigns(mesh, order, count, e)
+    const stiffness =
+      e < triangles
+        ? triangleStiffness(triangle, map, moduli, triangleFunctions, sign)
+        : quadStiffness(quad, map, moduli, quadFunctions, sign)
     return condense(stiffness, 2 * count, 2 * outer.length)
   })
+}
+
+function outerThenInner({ outer, inner }: ElementModes): Int32Array {
+  return Int32Array.from([...outer, ...inner])
 }
 
 /** Which blocks of dofs (nodes, then sides where the order gives them modes) couple: a clique an element. */
 function cliqueGraph(mesh: Mesh, { order, perSide }: DofMap): CliqueGraph {
   const nodes = nodeCount(mesh)
   const sides = order > 1 ? sideCount(mesh) : 0
-  const perClique = order > 1 ? 6 : 3
-  const count = triangleCount(mesh)
-  const clique = new Int32Array(perClique * count)
-  for (let t = 0; t < count; t++) {
-    for (let k = 0; k < 3; k++) {
-      clique[perClique * t + k] = mesh.triangle[3 * t + k]
-      if (order > 1) clique[perClique * t + 3 + k] = nodes + mesh.triangleSide[3 * t + k]
-    }
+  const clique: number[] = []
+  const cliqueStart = [0]
+  for (let element = 0; element < elementCount(mesh); element++) {
+    clique.push(...nodesOf(mesh, element))
+    if (order > 1) for (const side of sidesOf(mesh, element)) clique.push(nodes + side)
+    cliqueStart.push(clique.length)
   }
   return {
     vertices: nodes + sides,
-    cliqueStart: Int32Array.from({ length: count + 1 }, (_, t) => perClique * t),
-    clique,
+    cliqueStart: Int32Array.from(cliqueStart),
+    clique: Int32Array.from(clique),
     weight: Int32Array.from({ length: nodes + sides }, (_, v) => (v < nodes ? 2 : perSide))
   }
 }
@@ -99,16 +112,16 @@ function reaction(
   fixed.forEach((held, dof) => {
     if (held) force.set(dof, -load[dof])
   })
-  for (let t = 0; t < triangleCount(mesh); t++) {
-    const own = triangleDofs(mesh, dofs, t)
+  elements.forEach(({ matrix }, e) => {
+    const own = elementDofs(mesh, dofs, e)
     own.forEach((dof, i) => {
       const before = force.get(dof)
       if (before === undefined) return
       let sum = 0
-      for (let j = 0; j < own.length; j++) sum += elements[t].matrix[i * own.length + j] * x[own[j]]
+      for (let j = 0; j < own.length; j++) sum += matrix[i * own.length + j] * x[own[j]]
       force.set(dof, before + sum)
     })
-  }
+  })
   const total = load.reduce((sum, f) => sum + Math.abs(f), 0)
   return Math.max(...[...force.values()].map(Math.abs)) / total
 }

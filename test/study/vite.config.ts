@@ -1,0 +1,13 @@
+import { defineConfig } from 'vite'
+
+// the studies as programs for Node, which cannot run TypeScript
+export default defineConfig({
+  define: { __VERSION__: JSON.stringify('study') },
+  build: {
+    ssr: true,
+    target: 'node20',
+    outDir: '.study/built',
+    rollupOptions: { input: { elements: 'test/study/elements.ts' }, output: { entryFileNames: '[name].js' } }
+  },
+  ssr: { noExternal: true }
+})
