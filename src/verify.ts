@@ -5,6 +5,7 @@ import { buildPlate } from './case/build.ts'
 import type { Plate } from './case/plate.ts'
 import type { PlateCase } from './case/schema.ts'
 import { meshPlate } from './mesh/build.ts'
+import type { ElementKind, Mesh } from './mesh/mesh.ts'
 import type { Fineness } from './mesh/size.ts'
 import { barsOf, composeVerdict, unsettledRaisers } from './post/compose.ts'
 import { readRaisers, type Pass } from './post/pass.ts'
@@ -17,8 +18,10 @@ export interface VerifyOptions {
   readonly file: string
   /** Half-width wanted on every peak, relative; the case's own by default. */
   readonly tolerance?: number
-  /** A fixed order: no accuracy loop, the bar is reported as it comes out. */
+  /** A fixed order: the loop refines the mesh only, twice at most from order 3 up. */
   readonly order?: number
+  /** Kind of elements; quads along arcs and triangles elsewhere if left out. */
+  readonly elements?: ElementKind
   /** Milliseconds, for the times in the verdict; without it they are 0. */
   readonly clock?: () => number
 }
@@ -31,11 +34,13 @@ export interface Verification {
 }
 
 /** Orders of the accuracy loop; the order below each is solved too, to show what the higher one gained. */
-const ORDERS = [6, 8]
+const ORDERS = [5, 7]
 /** Meshes that the loop makes at most, each with half the element size near unsettled raisers. */
 const MOST_MESHES = 7
 /** Unknowns at which the loop stops refining. */
 const MOST_DOFS = 200_000
+/** Orders up to this one are refined everywhere: their error is not only at the raisers. */
+const LOW_ORDER = 2
 
 /**
  * Solves a case until every raiser's error bar is within the tolerance, or says that it is not.
@@ -45,6 +50,7 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
   const clock = options.clock ?? (() => 0)
   const start = clock()
   const tolerance = options.tolerance ?? plateCase.tolerance
+  const elements = options.elements ?? 'mixed'
   const orders = options.order ? [options.order] : ORDERS
   const plate = buildPlate(plateCase)
   const time = { mesh: 0, solve: 0, total: 0 }
@@ -55,16 +61,19 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
     time[stage] += clock() - begun
     return made
   }
-  const makeMesh = (fineness: Fineness) => timed('mesh', () => meshPlate(plate, fineness))
-  const solveAt = (on: { mesh: ReturnType<typeof makeMesh>; number: number }, order: number): Solution => {
+  const makeMesh = (fineness: Fineness) => timed('mesh', () => meshPlate(plate, fineness, elements))
+  const solveAt = (on: { mesh: Mesh; number: number }, order: number): Solution => {
     const solution = timed('solve', () => solvePlate(plate, on.mesh, order))
     passes.push(readRaisers(solution, on.number))
     return solution
   }
+  const everywhere = orders[0] <= LOW_ORDER
+  const refine = (fineness: Fineness, at: readonly number[]) =>
+    everywhere ? { ...fineness, all: fineness.all + 1 } : finer(plate, fineness, at)
 
   let fineness: Fineness = { raiser: plate.raisers.map(() => 0), all: 0 }
   let coarse = { mesh: makeMesh(fineness), number: 1 }
-  fineness = finer(plate, fineness, plate.raisers.map((_, r) => r))
+  fineness = refine(fineness, plate.raisers.map((_, r) => r))
   let fine = { mesh: makeMesh(fineness), number: 2 }
   let solution: Solution
   let rung = 0
@@ -75,20 +84,22 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
     solution = solveAt(fine, order)
 
     const unsettled = unsettledRaisers(passes, barsOf(passes, plate.raisers.length), tolerance)
-    if (unsettled.length === 0 || options.order) break
+    if (unsettled.length === 0 || (options.order && !everywhere)) break
     if (rung + 1 < orders.length) {
       rung++
       compareCoarse = true
       continue
     }
-    if (fine.number === MOST_MESHES || passes[passes.length - 1].dof > MOST_DOFS) break
-    fineness = finer(plate, fineness, unsettled)
+    const growth = everywhere ? 4 : 1
+    if (fine.number === MOST_MESHES || growth * passes[passes.length - 1].dof > MOST_DOFS) break
+    fineness = refine(fineness, unsettled)
     coarse = fine
     fine = { mesh: makeMesh(fineness), number: coarse.number + 1 }
     compareCoarse = false
   }
   time.total = clock() - start
-  return { verdict: composeVerdict({ plateCase, file: options.file, tolerance, fixedOrder: options.order ?? null, passes, solution, time }), plate, solution }
+  const fixedOrder = options.order ?? null
+  return { verdict: composeVerdict({ plateCase, file: options.file, tolerance, fixedOrder, elements, passes, solution, time }), plate, solution }
 }
 
 /** One halving more at the given raisers, and at sharp ones: their singular fields reach the others. */

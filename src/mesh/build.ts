@@ -5,20 +5,17 @@ import { checkMesh } from './check.ts'
 import { bareCollar, planCollar } from './collar.ts'
 import { divideBoundary } from './divide.ts'
 import { fillPlate } from './fill.ts'
-import type { Mesh } from './mesh.ts'
+import type { ElementKind, Mesh } from './mesh.ts'
 import { numberSides } from './number.ts'
 import { sizeField, type Fineness } from './size.ts'
 import { splitIntoQuads } from './split.ts'
 import { frontOf, layStrips } from './strip.ts'
 
-/** Triangles only; quads along the arcs and triangles elsewhere; quads only. */
-export type ElementKind = 'triangle' | 'mixed' | 'quad'
-
 /**
  * Meshes a plate at a fineness; checked before it is returned. Elements are curved along arcs.
  * @throws MeshError when the mesh breaks one of its invariants (a bug, not a user's mistake)
  */
-export function meshPlate(plate: Plate, fineness: Fineness, kind: ElementKind = 'triangle'): Mesh {
+export function meshPlate(plate: Plate, fineness: Fineness, kind: ElementKind): Mesh {
   // quads come from halving every side of a mesh that is twice as coarse
   const size = sizeField(plate, kind === 'quad' ? { ...fineness, all: fineness.all - 1 } : fineness)
   const divided = divideBoundary(plate, size)

@@ -8,7 +8,7 @@
 import Delaunator from 'delaunator'
 import { incircle, orient2d } from 'robust-predicates'
 import { pointOn } from '../case/plate.ts'
-import type { Plate } from '../case/plate.ts'
+import type { Plate, Point } from '../case/plate.ts'
 import type { DividedBoundary, Segment } from './divide.ts'
 import type { SizeField } from './size.ts'
 
@@ -45,7 +45,8 @@ function halve(segment: Segment, middle: number): [Segment, Segment] {
   ]
 }
 
-function middleOf(plate: Plate, { loop, edge, t0, t1 }: Segment) {
+function middleOf(plate: Plate, point: ArrayLike<number>, { onEdge, a, b, loop, edge, t0, t1 }: Segment): Point {
+  if (!onEdge) return [(point[2 * a] + point[2 * b]) / 2, (point[2 * a + 1] + point[2 * b + 1]) / 2]
   return pointOn(plate.loops[loop][edge].curve, (t0 + t1) / 2)
 }
 
@@ -70,7 +71,7 @@ function recoverBoundary(plate: Plate, boundary: DividedBoundary) {
     const lost = new Set(missing)
     segments = segments.flatMap((segment) => {
       if (!lost.has(segment)) return [segment]
-      const middle = point.push(...middleOf(plate, segment)) / 2 - 1
+      const middle = point.push(...middleOf(plate, point, segment)) / 2 - 1
       return halve(segment, middle)
     })
     if (point.length > 2 * MOST_VERTICES) throw new Error('the boundary was not recovered')
@@ -255,7 +256,7 @@ function refine(plate: Plate, startPoint: number[], startSegments: readonly Segm
 
   function halveSegment(s: number): void {
     const segment = segments[s]
-    const [x, y] = middleOf(plate, segment)
+    const [x, y] = middleOf(plate, point, segment)
     if (!openCavity(beside[s], x, y, s)) throw new Error('a boundary segment could not be halved')
     const [left, right] = halve(segment, vertexCount)
     segments[s] = left

@@ -3,6 +3,9 @@
 
 import type { Plate } from '../case/plate.ts'
 
+/** Triangles only; quads along the arcs and triangles elsewhere; quads only. */
+export type ElementKind = 'triangle' | 'mixed' | 'quad'
+
 export interface Mesh {
   /** (x, y) a node, plate units; 2 numbers a node. */
   readonly point: Float64Array

@@ -20,7 +20,7 @@ export interface Fineness {
 /** Element sides on an arc turn by about this angle at most (30 degrees): the stress along a hole's edge varies like cos 2 theta. */
 const ARC_ANGLE = Math.PI / 6
 /** Size at a tangent point of an arc and a line, in radii: the stress is continuous there, its slope is not. */
-const TANGENT = 0.25
+const TANGENT = 0.09
 /** Size at a corner of a raiser (a notch's mouth, the upper end of a large fillet), in lengths of its shorter edge. */
 const CORNER = 0.35
 /** Size at a sharp re-entrant corner, in lengths of its shorter edge: the singular field must not spoil its surroundings. */

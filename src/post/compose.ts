@@ -3,7 +3,7 @@
 import { STRESS_UNITS, LENGTH_UNITS } from '../case/units.ts'
 import type { PlateCase } from '../case/schema.ts'
 import { checkMesh } from '../mesh/check.ts'
-import { quadCount, triangleCount } from '../mesh/mesh.ts'
+import { quadCount, triangleCount, type ElementKind } from '../mesh/mesh.ts'
 import type { Solution } from '../solve/field.ts'
 import { VERSION } from '../version.ts'
 import { errorBar, type Bar, type Evidence } from './bar.ts'
@@ -44,6 +44,8 @@ export interface Findings {
   readonly tolerance: number
   /** The order that was fixed by hand, null for the accuracy loop. */
   readonly fixedOrder: number | null
+  /** The kind of elements that was meshed. */
+  readonly elements: ElementKind
   readonly passes: readonly Pass[]
   /** The last pass's solution. */
   readonly solution: Solution
@@ -51,7 +53,7 @@ export interface Findings {
 }
 
 /** The verdict of a case in the case's units. */
-export function composeVerdict({ plateCase, file, tolerance, fixedOrder, passes, solution, time }: Findings): Verdict {
+export function composeVerdict({ plateCase, file, tolerance, fixedOrder, elements, passes, solution, time }: Findings): Verdict {
   const { plate, mesh, order } = solution
   const { units } = plateCase
   const toStress = plate.unit.stress / STRESS_UNITS[units.stress]
@@ -115,6 +117,7 @@ export function composeVerdict({ plateCase, file, tolerance, fixedOrder, passes,
       freeEdge: governingMagnitude > 0 ? freeEdgeResidual(solution, free) / governingMagnitude : 0
     },
     mesh: {
+      elements,
       triangles: triangleCount(mesh),
       quads: quadCount(mesh),
       order,

@@ -1,5 +1,7 @@
 // What `verify` gives for a case: the object that `--json` prints. Lengths, forces and stresses are in the case's units.
 
+import type { ElementKind } from '../mesh/mesh.ts'
+
 export type LengthUnit = 'mm' | 'cm' | 'm' | 'in'
 export type ForceUnit = 'N' | 'kN' | 'lbf' | 'kip'
 export type StressUnit = 'Pa' | 'MPa' | 'GPa' | 'psi' | 'ksi'
@@ -78,6 +80,8 @@ export interface Checks {
 }
 
 export interface MeshFigures {
+  /** The kind of elements that was meshed. */
+  readonly elements: ElementKind
   readonly triangles: number
   readonly quads: number
   readonly order: number

@@ -43,7 +43,7 @@ export function elsewhereWarning(
   if (plate.raisers.length === 0) return []
   const peaks = sidePeaks(solution, boundarySidesOf(plate, mesh, -1)).filter(({ at }) => !nearSharpCorner(plate, at))
   if (peaks.length === 0) return []
-  const top: EdgePeak = foremost(peaks, 1e-9)
+  const top: EdgePeak = foremost(peaks, TIE)
   const stress = top.stress * toUnit
   if (governing && Math.abs(stress) <= (Math.abs(governing.stress) + governing.error) * (1 + WORTH_A_WORD)) return []
   const place = whereOnEdge(plate, top.loop, top.edge, top.t, units)
@@ -51,6 +51,9 @@ export function elsewhereWarning(
   const what = plate.sharpCorners.length > 0 ? 'apart from the sharp corners the largest stress' : 'the largest stress of the plate'
   return [`${what}, ${plainNumber(stress, 4)} ${units.stress}, is at no stress raiser: ${place}${compared}`]
 }
+
+/** Edge stresses away from the raisers are this accurate at least; closer ones are equal (the two faces of a bent bar). */
+const TIE = 1e-3
 
 /** Within the length of the shorter edge at a sharp corner the singular stress has no bound, so its size says nothing. */
 function nearSharpCorner(plate: Plate, [x, y]: readonly [number, number]): boolean {

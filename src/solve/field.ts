@@ -35,8 +35,11 @@ export function fieldIn(solution: Solution, element: number, reference: Float64A
   return fieldOn(solution, elementMap(mesh, bulgesOf(plate, mesh, solution.order), element), element, reference)
 }
 
+/** The field in any element of one solution at reference points: see `fieldIn`. */
+export type Sampler = (element: number, reference: Float64Array) => Float64Array
+
 /** A function like `fieldIn` for many elements of one solution. */
-export function fieldSampler(solution: Solution): (element: number, reference: Float64Array) => Float64Array {
+export function fieldSampler(solution: Solution): Sampler {
   const bulges = bulgesOf(solution.plate, solution.mesh, solution.order)
   return (element, reference) => fieldOn(solution, elementMap(solution.mesh, bulges, element), element, reference)
 }
@@ -141,7 +144,9 @@ export function sideReference(mesh: Mesh, b: number, s: ArrayLike<number>): Floa
 }
 
 /** Stress [sxx, syy, sxy] at a point of the plate (plate units), null outside it. Newton's method on the element's map. */
-export function stressAtPoint(solution: Solution, x: number, y: number): [number, number, number] | null {
+export function stressAtPoint(
+  solution: Solution, x: number, y: number, sample: Sampler = fieldSampler(solution)
+): [number, number, number] | null {
   const { plate, mesh } = solution
   const bulges = bulgesOf(plate, mesh, solution.order)
   let best: { element: number; xi: number; eta: number; outside: number } | null = null
@@ -157,7 +162,7 @@ export function stressAtPoint(solution: Solution, x: number, y: number): [number
   }
   // a point on the edge may fall outside by rounding
   if (!best || best.outside > 1e-9) return null
-  const field = fieldIn(solution, best.element, Float64Array.of(best.xi, best.eta))
+  const field = sample(best.element, Float64Array.of(best.xi, best.eta))
   return [field[4], field[5], field[6]]
 }
 

@@ -14,7 +14,7 @@ function stripWith(...holes: [x: number, y: number, radius: number][]): Plate {
   return plateOf([polygon(strip, null), ...holes.map(([x, y, radius], i) => circle([x, y], radius, -1, i, null))])
 }
 
-const evenly = (plate: Plate, halvings = 0) => meshPlate(plate, { raiser: plate.raisers.map(() => halvings), all: 0 })
+const evenly = (plate: Plate, halvings = 0) => meshPlate(plate, { raiser: plate.raisers.map(() => halvings), all: 0 }, 'mixed')
 
 describe('mesh of a plate', () => {
   it('passes its own check and adds up to the exact area: strip with one hole', () => {
@@ -43,7 +43,7 @@ describe('mesh of a plate', () => {
   it('halves its sides near a raiser that is refined, and not far away', () => {
     const plate = stripWith([0.25, 0, 0.03], [0.75, 0, 0.03])
     const plain = evenly(plate)
-    const refined = meshPlate(plate, { raiser: [2, 0], all: 0 })
+    const refined = meshPlate(plate, { raiser: [2, 0], all: 0 }, 'mixed')
     expect(longestSideNear(refined, 0.28, 0)).toBeLessThan(0.6 * longestSideNear(plain, 0.28, 0))
     expect(longestSideNear(refined, 0.78, 0)).toBeGreaterThan(0.6 * longestSideNear(plain, 0.78, 0))
   })

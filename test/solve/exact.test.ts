@@ -44,7 +44,7 @@ const lame: StressField = (x, y) => {
 }
 
 function solved(plate: Plate, order: number, halvings = 0): Solution {
-  return solvePlate(plate, meshPlate(plate, { raiser: plate.raisers.map(() => halvings), all: 0 }), order)
+  return solvePlate(plate, meshPlate(plate, { raiser: plate.raisers.map(() => halvings), all: 0 }, 'mixed'), order)
 }
 
 /** Largest difference of any stress component from the exact field, at points inside every element. */

@@ -15,7 +15,7 @@ const WIDTH = 320
 const HEIGHT = 200
 
 const plate = plateOf([polygon([[0, 0], [1, 0], [1, 0.5], [0, 0.5]], null), circle([0.4, 0.25], 0.1, -1, 0, null)])
-const mesh = meshPlate(plate, { raiser: [0], all: 0 })
+const mesh = meshPlate(plate, { raiser: [0], all: 0 }, 'mixed')
 const view = viewOf(plate, { left: 10, top: 10, right: 310, bottom: 190 })
 
 /** A field given by a formula, at the points to which the elements' exact maps lead. */

@@ -18,7 +18,7 @@ const plate = {
   ...plateOf([polygon([[0, 0], [1, 0], [1, 0.5], [0, 0.5]], null)]),
   unit: { length: 100, thickness: 8, stress: 50 }
 }
-const mesh = meshPlate(plate, { raiser: [], all: 0 })
+const mesh = meshPlate(plate, { raiser: [], all: 0 }, 'mixed')
 
 /** Order 1, displacements of a uniform stress sxx (plate units): u = sxx x, v = -nu sxx y. */
 function pulled(sxx: number): FigureSubject['solution'] {
@@ -51,7 +51,7 @@ function verdictOf(raisers: RaiserVerdict[]): Verdict {
     units: { length: 'mm', force: 'kN', stress: 'MPa' },
     raisers,
     checks: { balance: 0, residual: 0, freeEdge: 0 },
-    mesh: { triangles: 4, quads: 0, order: 1, dof: 20, smallestAngle: 0.5 },
+    mesh: { elements: 'mixed', triangles: 4, quads: 0, order: 1, dof: 20, smallestAngle: 0.5 },
     time: { mesh: 0, solve: 0, total: 0 },
     warnings: []
   }
