@@ -1,10 +1,13 @@
-// How large an element may be, and where: the smallest over all sources of (size + growth * distance to the source).
-// Sources sit on the boundary: on arcs (curvature), at tangent points where the curvature jumps, at corners, and wherever
-// the gap across the material to another edge is small. Lengths in plate units.
+// How large an element may be, and where: the smallest over all sources of (size + growth * distance to the source), so sizes of
+// neighbours differ by at most the growth times their distance. Sources sit on the boundary: on arcs (curvature), at tangent
+// points where the curvature jumps, at corners, and wherever the gap across the material to another edge is small. Lengths in
+// plate units. Cost: about n log n for n edges, log n a query.
 
-import { nearestOn } from '../case/nearest.ts'
+import Flatbush from 'flatbush'
+import { boxOf, nearestOn } from '../case/nearest.ts'
 import { derivativeOn, lengthOf, outwardNormal, pointOn, radiusOfCurvature } from '../case/plate.ts'
 import type { Curve, Edge, Plate, Point } from '../case/plate.ts'
+import { leastOver, type Source } from './source-tree.ts'
 
 /** Element size wanted at (x, y). */
 export type SizeField = (x: number, y: number) => number
@@ -13,7 +16,7 @@ export type SizeField = (x: number, y: number) => number
 export interface Fineness {
   /** Halvings asked for at each raiser, by index in `Plate.raisers`. */
   readonly raiser: readonly number[]
-  /** Halvings asked for everywhere. */
+  /** Halvings of all sizes, everywhere; -1 doubles them. */
   readonly all: number
 }
 
@@ -25,6 +28,11 @@ const TANGENT = 0.09
 const CORNER = 0.35
 /** Size at a sharp re-entrant corner, in lengths of its shorter edge: the singular field must not spoil its surroundings. */
 const SHARP = 1e-3
+/**
+ * Size at the root of a notch, at most, in its depths: it matters where the depth is less than a quarter of the radius. Measured for
+ * depth 0.05 radius at order 4: 1750 unknowns and an error of 2e-5 with it, 1920 and 8e-5 without.
+ */
+const SHALLOW = 2
 /** Size in a gap between two edges, in widths of the gap. */
 const GAP = 1
 /** Growth of the size with the distance from a source. */
@@ -32,36 +40,18 @@ const GROWTH = 0.75
 /** Samples along an edge that look across the material for gaps. */
 const SAMPLES = 16
 
-interface Source {
-  readonly x: number
-  readonly y: number
-  readonly size: number
-}
-
-/** The size field of a plate at a fineness. Cost of a call: the number of sources that are not covered by others. */
+/** The size field of a plate at a fineness. */
 export function sizeField(plate: Plate, fineness: Fineness): SizeField {
-  const sources = independent([
-    ...arcSources(plate, fineness),
-    ...joinSources(plate, fineness),
-    ...gapSources(plate, fineness)
-  ])
-  const count = sources.length
-  const x = Float64Array.from(sources, (source) => source.x)
-  const y = Float64Array.from(sources, (source) => source.y)
-  const size = Float64Array.from(sources, (source) => source.size)
-  return (px, py) => {
-    let smallest = Infinity
-    for (let i = 0; i < count; i++) {
-      const here = size[i] + GROWTH * Math.hypot(px - x[i], py - y[i])
-      if (here < smallest) smallest = here
-    }
-    return smallest
-  }
+  const sources = [...arcSources(plate, fineness), ...joinSources(plate, fineness)]
+  const gaps = gapSources(plate, fineness, leastOver(sources, GROWTH))
+  const least = leastOver([...sources, ...gaps], GROWTH)
+  const scale = 2 ** -fineness.all
+  return (x, y) => scale * least(x, y)
 }
 
 /** 2 to the minus halvings for what belongs to a raiser (or to none: -1). */
-function scaleFor({ raiser, all }: Fineness, index: number): number {
-  return 2 ** -(all + (index < 0 ? 0 : raiser[index]))
+function scaleFor({ raiser }: Fineness, index: number): number {
+  return index < 0 ? 1 : 2 ** -raiser[index]
 }
 
 /** Sources along every arc: a length that turns by ARC_ANGLE, or the whole arc where that is shorter. */
@@ -70,9 +60,11 @@ function arcSources(plate: Plate, fineness: Fineness): Source[] {
   for (const { curve, raiser } of plate.loops.flat()) {
     if (curve.kind === 'line') continue
     const steps = 2 * Math.ceil(Math.abs(curve.sweep) / ARC_ANGLE)
+    const notch = plate.raisers[raiser]
+    const shallow = notch?.kind === 'notch' ? SHALLOW * notch.depth : Infinity
     for (let i = 0; i <= steps; i++) {
       const [x, y] = pointOn(curve, i / steps)
-      const size = Math.min(radiusOfCurvature(curve, i / steps) * ARC_ANGLE, lengthOf(curve))
+      const size = Math.min(radiusOfCurvature(curve, i / steps) * ARC_ANGLE, lengthOf(curve), shallow)
       sources.push({ x, y, size: size * scaleFor(fineness, raiser) })
     }
   }
@@ -112,21 +104,30 @@ function tangentSize(before: Curve, after: Curve): number {
   return TANGENT * Math.min(a, b, lengthOf(before), lengthOf(after))
 }
 
-/** Sources on both sides of narrow material: the distance from points of each edge to the edges that face it. */
-function gapSources(plate: Plate, fineness: Fineness): Source[] {
+/**
+ * Sources on both sides of narrow material: the distance from points of each edge to the edges that face it, as far as that lowers the
+ * size that other sources ask for there.
+ */
+function gapSources(plate: Plate, fineness: Fineness, sizeWithout: SizeField): Source[] {
   const sources: Source[] = []
   const places = plate.loops.flatMap((loop, l) => loop.map((edge, e) => ({ edge, loop: l, position: e, size: loop.length })))
+  const index = new Flatbush(places.length)
+  for (const { edge } of places) index.add(...boxOf(edge.curve))
+  index.finish()
   for (const own of places) {
+    const scale = GAP * scaleFor(fineness, own.edge.raiser)
     for (let i = 0; i <= SAMPLES; i++) {
       const point = pointOn(own.edge.curve, i / SAMPLES)
       const normal = outwardNormal(own.edge.curve, i / SAMPLES)
-      let gap = Infinity
-      for (const other of places) {
+      const [x, y] = point
+      const reach = sizeWithout(x, y) / scale
+      let gap = reach
+      for (const found of index.search(x - reach, y - reach, x + reach, y + reach)) {
+        const other = places[found]
         if (other === own || (other.loop === own.loop && neighbours(own.position, other.position, own.size))) continue
         gap = Math.min(gap, facingDistance(point, normal, other.edge.curve))
       }
-      if (!Number.isFinite(gap)) continue
-      sources.push({ x: point[0], y: point[1], size: GAP * gap * scaleFor(fineness, own.edge.raiser) })
+      if (gap < reach) sources.push({ x, y, size: scale * gap })
     }
   }
   return sources
@@ -143,14 +144,4 @@ function facingDistance([x, y]: Point, normal: Point, curve: Curve): number {
   const distance = Math.hypot(qx - x, qy - y)
   const inward = -(normal[0] * (qx - x) + normal[1] * (qy - y))
   return inward > 0.5 * distance ? distance : Infinity
-}
-
-/** The sources that no other source already covers: smallest first, each kept only if it still lowers the field. */
-function independent(sources: readonly Source[]): Source[] {
-  const kept: Source[] = []
-  for (const source of sources.toSorted((a, b) => a.size - b.size)) {
-    const covered = kept.some((k) => k.size + GROWTH * Math.hypot(k.x - source.x, k.y - source.y) <= source.size)
-    if (!covered) kept.push(source)
-  }
-  return kept
 }

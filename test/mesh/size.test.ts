@@ -1,0 +1,59 @@
+import fc from 'fast-check'
+import { describe, expect, it } from 'vitest'
+import { sizeField } from '../../src/mesh/size.ts'
+import { leastOver } from '../../src/mesh/source-tree.ts'
+import { plateFrom } from '../support/case.ts'
+import { expectNear } from '../support/near.ts'
+
+const place = fc.double({ min: -1, max: 1, noNaN: true })
+const source = fc.record({ x: place, y: place, size: fc.double({ min: 1e-6, max: 1, noNaN: true }) })
+
+describe('least over many sources', () => {
+  it('is what looking at all of them gives, to the bit', () => {
+    fc.assert(
+      fc.property(fc.array(source, { maxLength: 200 }), fc.array(fc.tuple(place, place), { minLength: 1, maxLength: 20 }), (sources, points) => {
+        const tree = leastOver(sources, 0.75)
+        for (const [x, y] of points) {
+          expect(tree(x, y)).toBe(Math.min(Infinity, ...sources.map((s) => s.size + 0.75 * Math.hypot(x - s.x, y - s.y))))
+        }
+      }),
+      { seed: 11, numRuns: 200 }
+    )
+  })
+
+  it('takes many sources in one place', () => {
+    expect(leastOver(Array.from({ length: 1000 }, (_, i) => ({ x: 0.1, y: 0.2, size: 1 + i })), 1)(0.1, 0.2)).toBe(1)
+  })
+})
+
+describe('size field', () => {
+  const bar = (fields: object) => plateFrom({ thickness: 5, load: { axial: 1000 }, plate: { sections: [{ width: 50, length: 200 }] }, ...fields }).plate
+  const at = (plate: ReturnType<typeof bar>, x: number, y: number, raiser = 0, all = 0) =>
+    sizeField(plate, { raiser: plate.raisers.map(() => raiser), all })(x / plate.unit.length, y / plate.unit.length) * plate.unit.length
+
+  it('follows the radius of an arc: half of it, about', () => {
+    const plate = bar({ holes: [{ shape: 'circle', diameter: 10, at: [100, 0] }] })
+    expect(at(plate, 100, 5)).toBeGreaterThan(2.4)
+    expect(at(plate, 100, 5)).toBeLessThan(2.7)
+  })
+
+  it('is limited by narrow gaps: two holes, a hole at the edge, a hole between notches', () => {
+    expect(at(bar({ holes: [{ shape: 'circle', diameter: 20, at: [100, 14] }] }), 100, 24.5)).toBeLessThan(1.5)
+    expect(at(bar({ holes: [{ shape: 'circle', diameter: 20, at: [89.5, 0] }, { shape: 'circle', diameter: 20, at: [110.5, 0] }] }), 100, 0)).toBeLessThan(1.5)
+    const notched = bar({ holes: [{ shape: 'circle', diameter: 20, at: [100, 0] }], notches: [{ side: 'both', x: 100, depth: 14, radius: 14 }] })
+    expect(at(notched, 100, 10.5)).toBeLessThan(1.6)
+  })
+
+  it('is halved at refined raisers, and everywhere for all', () => {
+    const plate = bar({ holes: [{ shape: 'circle', diameter: 10, at: [100, 0] }] })
+    expectNear(at(plate, 100, 5, 1), at(plate, 100, 5) / 2, { rel: 1e-12, because: 'a source of its own' })
+    expect(at(plate, 20, 5, 0, 2)).toBe(at(plate, 20, 5) / 4)
+  })
+
+  it('asks for elements no larger than its depth in a shallow notch', () => {
+    for (const depth of [0.5, 1, 2]) {
+      const plate = bar({ notches: [{ side: 'top', x: 100, depth, radius: 20 }] })
+      expect(at(plate, 100, 25 - depth)).toBeLessThanOrEqual(2 * depth)
+    }
+  })
+})
