@@ -9,9 +9,11 @@ import { Command, CommanderError, InvalidArgumentError, Option } from 'commander
 import { CaseError, formatProblems } from './case/problem.ts'
 import { readCase } from './case/read.ts'
 import { caseJsonSchema, LEAST_TOLERANCE, readShare, type PlateCase } from './case/schema.ts'
+import { ELEMENT_KINDS, type ElementKind } from './mesh/mesh.ts'
 import { renderFigure } from './post/draw/figure.ts'
 import { percent, plainNumber, withBar } from './post/format.ts'
 import { CAUTIONS, reportText } from './post/report.ts'
+import type { Verdict } from './post/verdict.ts'
 import { wrap } from './post/wrap.ts'
 import { checkExpectations, type Row } from './regress.ts'
 import { verify, type Verification } from './verify.ts'
@@ -59,9 +61,11 @@ export async function main(argv: readonly string[], io: Io): Promise<number> {
     .argument('<case...>', 'case files; - reads one from stdin')
     .option('--json', 'one JSON object a case instead of the report')
     .option('--tolerance <share>', 'half-width wanted on every peak, such as 0.001 or 0.1%', parseTolerance)
-    .option('--verbose', 'add how each Kt settled over meshes and orders')
+    .option('--verbose', 'add how each Kt settled, and the same case with the other kinds of elements')
     .option('--order <p>', 'a fixed order of the elements instead of the accuracy loop', parseOrder)
-    .addOption(new Option('--elements <kind>', 'kind of elements').hideHelp())
+    .addOption(
+      new Option('--elements <kind>', 'triangles, quads along arcs (the usual), or quads only').choices(ELEMENT_KINDS)
+    )
     .addOption(new Option('--figure <folder>', 'write the picture of each case').hideHelp())
     .action(async (files: string[], options: VerifyFlags) => {
       status = await verifyCases(files, options, io)
@@ -115,31 +119,39 @@ interface VerifyFlags {
   readonly tolerance?: number
   readonly verbose?: true
   readonly order?: number
-  readonly elements?: string
+  readonly elements?: ElementKind
   readonly figure?: string
 }
 
 async function verifyCases(files: readonly string[], flags: VerifyFlags, io: Io): Promise<Status> {
-  if (flags.elements !== undefined) throw new Refusal('--elements is not supported yet: the program chooses the elements')
   if (flags.figure !== undefined) throw new Refusal('--figure is not supported yet: offchart render CASE -o FIGURE.png draws one case')
-  const { tolerance, order } = flags
+  const { tolerance, order, elements, verbose = false } = flags
   let worst: Status = 0
   let printed = 0
   for (const file of files) {
-    const solved = await solveCase(file, { tolerance, order }, io)
+    const solved = await solveCase(file, { tolerance, order, elements }, io)
     if (!solved) {
       worst = 2
       continue
     }
     const { verdict } = solved.verification
+    const others = verbose && !flags.json ? otherElements(solved, { tolerance, order }, io) : []
     if (flags.json) io.stdout(`${JSON.stringify(verdict, null, files.length > 1 ? 0 : 2)}\n`)
-    else io.stdout((printed > 0 ? '\n\n' : '') + reportText(verdict, { verbose: flags.verbose ?? false, colour: hasColour(io) }))
+    else io.stdout((printed > 0 ? '\n\n' : '') + reportText(verdict, { verbose, colour: hasColour(io), others }))
     printed++
     // a fixed order promises no tolerance, unless one is asked for
     const isOwed = order === undefined || tolerance !== undefined
     if (!verdict.settled && isOwed) worst = Math.max(worst, 1) as Status
   }
   return worst
+}
+
+/** The same case with the kinds of elements that it was not solved with. */
+function otherElements({ plateCase, verification }: Solved, flags: SolveFlags, io: Io): Verdict[] {
+  const { file, mesh } = verification.verdict
+  return ELEMENT_KINDS.filter((kind) => kind !== mesh.elements).map(
+    (elements) => verify(plateCase, { file, ...flags, elements, clock: io.now }).verdict
+  )
 }
 
 async function renderCase(file: string, output: string, io: Io): Promise<Status> {
@@ -205,7 +217,7 @@ interface Solved {
   readonly verification: Verification
 }
 
-type SolveFlags = { readonly tolerance?: number; readonly order?: number }
+type SolveFlags = { readonly tolerance?: number; readonly order?: number; readonly elements?: ElementKind }
 
 /** Reads and solves a case; null when it was refused, which has then been said on stderr. */
 async function solveCase(file: string, flags: SolveFlags, io: Io): Promise<Solved | null>

@@ -73,22 +73,29 @@ function findValue(expectation: Expectation, verification: Verification): Found 
     : { value: kt.gross, error: (kt.error * kt.gross) / kt.net }
 }
 
+/** Highest order that a stress at a point is looked for at. */
+const HIGHEST_ORDER = 8
+
 /**
- * A stress at a point. Its bar is the largest change against the two orders below on the same mesh, which are those
- * orders' errors more nearly than the last one's.
+ * A stress at a point, on the mesh that settled the raisers. Its bar is the largest change against the two orders below, which are
+ * those orders' errors more nearly than the last one's; the order rises until the bar is within a third of the band.
  */
-function findStress({ at, stress }: Expectation, { plate, solution, verdict }: Verification): Found {
+function findStress({ at, stress, value: expected, within }: Expectation, { plate, solution, verdict }: Verification): Found {
   const perLength = LENGTH_UNITS[verdict.units.length] / plate.unit.length
   const toStress = plate.unit.stress / STRESS_UNITS[verdict.units.stress]
   const read = (from: Solution) => {
     const state = stressAtPoint(from, at![0] * perLength, at![1] * perLength)
     return state && componentOf(state, stress!) * toStress
   }
-  const value = read(solution)
-  if (value === null) return { why: 'the point is not in the plate' }
-  const lowerOrders = [solution.order - 1, solution.order - 2].filter((order) => order >= 1)
-  const changes = lowerOrders.map((order) => Math.abs(read(solvePlate(plate, solution.mesh, order))! - value))
-  return { value, error: changes.length > 0 ? Math.max(...changes) : Infinity }
+  if (read(solution) === null) return { why: 'the point is not in the plate' }
+  const first = Math.max(3, solution.order)
+  const values = [first - 2, first - 1, first].map((order) => read(solvePlate(plate, solution.mesh, order))!)
+  for (let order = first; ; order++) {
+    const [twoBelow, oneBelow, value] = values.slice(-3)
+    const error = Math.max(Math.abs(value - oneBelow), Math.abs(value - twoBelow))
+    if (order >= HIGHEST_ORDER || error <= (within * Math.abs(expected!)) / 3) return { value, error }
+    values.push(read(solvePlate(plate, solution.mesh, order + 1))!)
+  }
 }
 
 function componentOf(state: StressState, component: NonNullable<Expectation['stress']>): number {

@@ -4,7 +4,8 @@
 import type { Plate } from '../case/plate.ts'
 
 /** Triangles only; quads along the arcs and triangles elsewhere; quads only. */
-export type ElementKind = 'triangle' | 'mixed' | 'quad'
+export const ELEMENT_KINDS = ['triangle', 'mixed', 'quad'] as const
+export type ElementKind = (typeof ELEMENT_KINDS)[number]
 
 export interface Mesh {
   /** (x, y) a node, plate units; 2 numbers a node. */

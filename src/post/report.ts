@@ -14,16 +14,19 @@ export interface ReportOptions {
   readonly verbose: boolean
   /** Emphasis by terminal escape sequences. */
   readonly colour: boolean
+  /** The same case solved with other kinds of elements, to stand beside it. */
+  readonly others?: readonly Verdict[]
 }
 
 /** The report on one case, with a line feed at the end. */
-export function reportText(verdict: Verdict, { verbose, colour }: ReportOptions): string {
+export function reportText(verdict: Verdict, { verbose, colour, others = [] }: ReportOptions): string {
   const style = colour ? ANSI : PLAIN
   const blocks = [
     [style.strong(verdict.case), ...(verdict.file === verdict.case ? [] : [style.quiet(verdict.file)])],
     raiserTable(verdict, style),
     wrap(governingSentence(verdict)),
     ...verdict.raisers.map((raiser) => raiserLines(verdict, raiser, verbose)),
+    others.length > 0 ? elementTable([verdict, ...others]) : [],
     [...settledLines(verdict, style), ...evidenceLines(verdict)],
     verdict.warnings.flatMap((warning) => wrap(`Warning: ${warning}`, '  ').map(style.warn)),
     wrap(CAUTIONS).map(style.quiet)
@@ -135,6 +138,36 @@ function raiserLines(verdict: Verdict, raiser: RaiserVerdict, verbose: boolean):
   }
   if (verbose && raiser.history.length > 0) lines.push(...historyTable(raiser).map((line) => `  ${line}`))
   return lines
+}
+
+/** Words for the kinds of elements. */
+const KIND_WORDS = { triangle: 'triangles only', mixed: 'quads along arcs', quad: 'quads only' } as const
+
+/** One row a kind of elements: the mesh, and Kt (peak where there is no Kt) of the first verdict's governing raiser. */
+function elementTable(verdicts: readonly Verdict[]): string[] {
+  const { governing, units } = verdicts[0]
+  const shown = verdicts.map(({ raisers }) => raisers.find(({ id }) => id === governing) ?? null)
+  const barred = shown.map((raiser) => {
+    if (!raiser?.peak) return null
+    return raiser.kt ? withBar(raiser.kt.net, raiser.kt.error) : withBar(raiser.peak.stress, raiser.peak.error)
+  })
+  const cells = alignBarred(barred)
+  const head = ['elements', 'triangles', 'quads', 'order', 'unknowns', 'ms', shown[0]?.kt ? 'Kt net' : `peak, ${units.stress}`]
+  const rows = verdicts.map(({ mesh, time }, k) => [
+    KIND_WORDS[mesh.elements],
+    String(mesh.triangles),
+    String(mesh.quads),
+    String(mesh.order),
+    String(mesh.dof),
+    String(Math.round(time.total)),
+    cells[k]
+  ])
+  const table = [head, ...rows]
+  const widths = head.map((_, column) => Math.max(...table.map((row) => row[column].length)))
+  const lines = table.map((row) =>
+    row.map((cell, k) => (k === 0 || k === head.length - 1 ? cell.padEnd(widths[k]) : cell.padStart(widths[k]))).join('  ').trimEnd()
+  )
+  return [governing === null ? 'by kind of elements' : `${governing}, by kind of elements`, ...lines.map((line) => `  ${line}`)]
 }
 
 /** Mesh, order, unknowns, Kt (peak where there is no Kt) and its change since the step before. */

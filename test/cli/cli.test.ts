@@ -91,8 +91,33 @@ describe('verify', () => {
     expect(err).toContain('whole number from 1 to 10')
   })
 
+  it('meshes with the kind of elements that is asked for, and names the kinds otherwise', async () => {
+    for (const kind of ['triangle', 'mixed', 'quad']) {
+      const { mesh, settled } = JSON.parse((await run(['verify', 'strip.yaml', '--json', '--elements', kind])).out)
+      expect(settled).toBe(true)
+      expect([mesh.elements, mesh.triangles > 0, mesh.quads > 0]).toEqual([kind, kind !== 'quad', kind !== 'triangle'])
+      expect(mesh.smallestAngle).toBeGreaterThan(15)
+    }
+    const { status, err } = await run(['verify', 'strip.yaml', '--elements', 'hexagon'])
+    expect(status).toBe(2)
+    expect(err).toContain('triangle, mixed, quad')
+  })
+
+  it('sets the other kinds of elements beside the one that was used in --verbose', async () => {
+    const { out } = await run(['verify', 'strip.yaml', '--verbose', '--order', '4'])
+    for (const words of ['quads along arcs', 'triangles only', 'quads only']) expect(out).toContain(words)
+    expect((await run(['verify', 'strip.yaml', '--order', '4'])).out).not.toContain('triangles only')
+  })
+
+  it('refines a mesh of order 1 or 2 until its bar holds or the mesh is as large as it may be', async () => {
+    const { raisers, mesh } = JSON.parse((await run(['verify', 'strip.yaml', '--json', '--order', '1', '--tolerance', '20%'])).out)
+    expect(raisers[0].kt.error).toBeLessThan(0.2 * raisers[0].kt.net)
+    expect(raisers[0].history.length).toBeGreaterThan(2)
+    expect(mesh.dof).toBeLessThan(200_000)
+  })
+
   it('says in a sentence what it does not do yet', async () => {
-    for (const argv of [['verify', 'strip.yaml', '--elements', 'quad'], ['verify', 'strip.yaml', '--figure', 'figures'], ['charts']]) {
+    for (const argv of [['verify', 'strip.yaml', '--figure', 'figures'], ['charts']]) {
       const { status, err } = await run(argv)
       expect(status).toBe(2)
       expect(err).toMatch(/^offchart: .*not supported yet/)
