@@ -76,8 +76,9 @@ export async function main(argv: readonly string[], io: Io): Promise<number> {
     .description('the stress picture of a case, for a report')
     .argument('<case>', 'a case file; - reads it from stdin')
     .requiredOption('-o, --output <figure.png>', 'the file to write')
-    .action(async (file: string, { output }: { output: string }) => {
-      status = await renderCase(file, output, io)
+    .option('--mesh', 'draw the sides of the elements over the field')
+    .action(async (file: string, { output, mesh }: { output: string; mesh?: true }) => {
+      status = await renderCase(file, output, mesh ?? false, io)
     })
 
   program
@@ -154,12 +155,12 @@ function otherElements({ plateCase, verification }: Solved, flags: SolveFlags, i
   )
 }
 
-async function renderCase(file: string, output: string, io: Io): Promise<Status> {
+async function renderCase(file: string, output: string, mesh: boolean, io: Io): Promise<Status> {
   if (extname(output).toLowerCase() !== '.png') throw new Refusal(`expected a file name that ends in .png, got ${output}`)
   const solved = await solveCase(file, {}, io)
   if (!solved) return 2
   const { verification, plateCase } = solved
-  const png = renderFigure(verification, plateCase, { width: 1600, height: 1000 })
+  const png = renderFigure(verification, plateCase, { mesh })
   try {
     io.writeFile(output, png)
   } catch (error) {

@@ -24,7 +24,7 @@ export interface Fineness {
 const ARC_ANGLE = Math.PI / 6
 /** Size at a tangent point of an arc and a line, in radii: the stress is continuous there, its slope is not. */
 const TANGENT = 0.09
-/** Size at a corner of a raiser (a notch's mouth, the upper end of a large fillet), in lengths of its shorter edge. */
+/** Size at the ends of a raiser's edge (a notch's mouth, the upper end of a large fillet, a short face), in lengths of the shorter edge. */
 const CORNER = 0.35
 /** Size at a sharp re-entrant corner, in lengths of its shorter edge: the singular field must not spoil its surroundings. */
 const SHARP = 1e-3
@@ -96,12 +96,12 @@ function tangentAt(before: Edge, after: Edge): boolean {
   return Math.abs(ax * by - ay * bx) < 1e-3 * Math.hypot(ax, ay) * Math.hypot(bx, by) && ax * bx + ay * by > 0
 }
 
-/** Size at a tangent point: a part of the smaller radius, Infinity where the curvature does not jump. */
+/** Size at a tangent point: a part of the smaller radius, and of an edge that is shorter; Infinity where the curvature does not jump. */
 function tangentSize(before: Curve, after: Curve): number {
   const a = radiusOfCurvature(before, 1)
   const b = radiusOfCurvature(after, 0)
   if (a === b || Math.abs(a - b) < 1e-6 * a) return Infinity
-  return TANGENT * Math.min(a, b, lengthOf(before), lengthOf(after))
+  return Math.min(TANGENT * Math.min(a, b), CORNER * Math.min(lengthOf(before), lengthOf(after)))
 }
 
 /**

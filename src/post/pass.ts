@@ -36,16 +36,38 @@ export function readRaisers(solution: Solution, mesh: number): Pass {
 }
 
 function readRaiser(solution: Solution, raiser: number): Reading {
-  const { plate, mesh } = solution
+  const { plate, mesh, order } = solution
   const own = boundarySidesOf(plate, mesh, raiser)
-  const sides = sidePeaks(solution, own)
+  const place = new Map(own.map((b, i) => [b, i]))
+  const before = own.map((b) => place.get(neighbour(mesh, b, -1)) ?? -1)
+  const after = own.map((b) => place.get(neighbour(mesh, b, 1)) ?? -1)
+  const sides = order > JOINED_FROM ? joinEnds(sidePeaks(solution, own), before, after) : sidePeaks(solution, own)
   const size = sides.map(({ stress }) => Math.abs(stress))
-  const neighbours = own.map((b) => [own.indexOf(neighbour(mesh, b, -1)), own.indexOf(neighbour(mesh, b, 1))].filter((i) => i >= 0))
-  const peaks = sides.filter((_, i) => neighbours[i].every((n) => size[i] >= size[n]))
+  const besides = (i: number) => [before[i], after[i]].filter((n) => n >= 0)
+  const peaks = sides.filter((_, i) => besides(i).every((n) => size[i] >= size[n]))
   const magnitude = Math.max(...size)
   const top = size.indexOf(magnitude)
-  const near = [top, ...neighbours[top]].map((i) => own[i])
+  const near = [top, ...besides(top)].map((i) => own[i])
   return { magnitude, peaks, leftOver: freeEdgeResidual(solution, near) }
+}
+
+/** Up to this order the edge stress of a side is constant or straight, and says nothing of a maximum near its end. */
+const JOINED_FROM = 2
+
+/**
+ * The sides' peaks with the step between neighbours taken out. The true stress is continuous along the edge, the elements' one steps
+ * at their ends, and a side that ends near a tangent point overshoots there. So a peak at a side's end counts only where the
+ * neighbour has its peak at the same vertex, and then as the mean of the two; else the neighbour says that the maximum lies elsewhere.
+ */
+function joinEnds(sides: readonly EdgePeak[], before: readonly number[], after: readonly number[]): EdgePeak[] {
+  const joined = sides.map((side, i): EdgePeak => {
+    const other = side.end === 1 ? after[i] : side.end === -1 ? before[i] : -1
+    if (other < 0) return side
+    const counts = sides[other].end === -side.end
+    return { ...side, stress: counts ? (side.stress + sides[other].stress) / 2 : 0 }
+  })
+  // where the stress is constant, every side may point to the next one
+  return joined.some(({ stress }) => stress !== 0) ? joined : [...sides]
 }
 
 /** The boundary side before (-1) or after (+1) side b on its loop. */

@@ -13,6 +13,8 @@ export interface EdgePeak {
   readonly edge: number
   /** Parameter on the edge's curve. */
   readonly t: number
+  /** Where on its boundary side: at its beginning (-1), its end (1) or between them (0). */
+  readonly end: -1 | 0 | 1
 }
 
 /** Golden-section steps that shrink the interval between two samples to 1e-8 of itself. */
@@ -43,7 +45,8 @@ function sidePeak(solution: Solution, b: number): EdgePeak {
     at: pointOn(edgeUnder(plate, mesh, b).curve, t),
     loop: mesh.boundary.loop[b],
     edge: mesh.boundary.edge[b],
-    t
+    t,
+    end: best === 1 ? 1 : best === -1 ? -1 : 0
   }
 }
 

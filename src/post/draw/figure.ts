@@ -6,7 +6,8 @@ import type { Plate } from '../../case/plate.ts'
 import type { PlateCase } from '../../case/schema.ts'
 import { LENGTH_UNITS, STRESS_UNITS } from '../../case/units.ts'
 import { elementCount } from '../../mesh/mesh.ts'
-import { fieldSampler, type Solution } from '../../solve/field.ts'
+import type { Solution } from '../../solve/field.ts'
+import { reportedSampler } from '../../solve/recovery.ts'
 import { percent, plainNumber, withBar } from '../format.ts'
 import { principalStresses, type StressState } from '../principal.ts'
 import type { RaiserVerdict, Verdict } from '../verdict.ts'
@@ -15,6 +16,7 @@ import { coverPolygons, type Polygon } from './coverage.ts'
 import { extendField, type PaintedField, paintField } from './field.ts'
 import { openFont, type Font } from './font.ts'
 import { drawLegend, roundStep } from './legend.ts'
+import { drawMesh } from './mesh.ts'
 import { encodePng } from './png.ts'
 import { colourOfStress, makeScale, type Scale } from './scale.ts'
 import { circle, strokeClosed, strokeLine } from './stroke.ts'
@@ -28,10 +30,12 @@ export interface FigureSubject {
   readonly solution: Solution
 }
 
-export interface FigureSize {
+export interface FigureOptions {
   /** Pixels, whole numbers of at least 320 by 200; 1600 by 1000 if left out. */
   readonly width?: number
   readonly height?: number
+  /** Draws the sides of the elements over the field. */
+  readonly mesh?: boolean
 }
 
 const PAPER = 0xffffff
@@ -51,19 +55,19 @@ const CAUTION = 'linear elastic, plane stress, static: for a licensed engineerâ€
  * The picture of a solved case as PNG bytes; the same case gives the same bytes.
  * @throws RangeError when the size is not that of a picture
  */
-export function renderFigure(subject: FigureSubject, plateCase: PlateCase, size: FigureSize = {}): Uint8Array {
-  const { width = 1600, height = 1000 } = size
+export function renderFigure(subject: FigureSubject, plateCase: PlateCase, options: FigureOptions = {}): Uint8Array {
+  const { width = 1600, height = 1000, mesh = false } = options
   if (!(Number.isInteger(width) && Number.isInteger(height) && width >= 320 && height >= 200 && width * height <= 6e7)) {
     throw new RangeError(`a picture of ${width} by ${height} pixels`)
   }
-  const canvas = drawFigure(subject, plateCase, width, height, openFont())
+  const canvas = drawFigure(subject, plateCase, width, height, openFont(), mesh)
   const { verdict } = subject
   return encodePng(canvas, PRINT_WIDTH, { title: verdict.case, software: `offchart ${verdict.offchart}` })
 }
 
 /** The picture before it is a file. */
 export function drawFigure(
-  { verdict, plate, solution }: FigureSubject, plateCase: PlateCase, width: number, height: number, font: Font
+  { verdict, plate, solution }: FigureSubject, plateCase: PlateCase, width: number, height: number, font: Font, showsMesh = false
 ): Canvas {
   // lengths of the layout are given for a picture of 1600 by 1000
   const u = Math.min(width / 1600, height / 1000)
@@ -74,11 +78,13 @@ export function drawFigure(
 
   const view = viewOf(plate, { left: margin, right: width - margin, top: margin, bottom: height - 345 * u })
   const outline = outlineOf(plate, view)
-  const sample = fieldSampler(solution)
+  const sample = reportedSampler(solution)
   const { mesh, order } = solution
   const field = paintField({ mesh, order, sample, quantity: shown.quantity, view, width, height })
   const scale = scaleOf(field, shown.peak)
-  drawField(canvas, outline, field, scale, 2.2 * u)
+  drawField(canvas, outline, field, scale)
+  if (showsMesh) drawMesh(canvas, mesh, view, 1.1 * u, INK)
+  for (const loop of outline) fill(canvas, coverPolygons(strokeClosed(loop, 2.2 * u)), INK)
   if (governing?.peak) markPeak(canvas, governing.peak.at, verdict, plate, view, u)
 
   const small = { font, size: 25 * u, colour: GREY }
@@ -148,11 +154,10 @@ function reachesBeyond({ low, high }: PaintedField, scale: Scale): boolean {
   return high > scale.high + trace || low < scale.low - trace
 }
 
-function drawField(canvas: Canvas, outline: readonly Polygon[], field: PaintedField, scale: Scale, stroke: number): void {
+function drawField(canvas: Canvas, outline: readonly Polygon[], field: PaintedField, scale: Scale): void {
   const inside = coverPolygons(outline)
   extendField(field, inside)
   fillEach(canvas, inside, (x, y) => colourOfStress(scale, field.amount[y * field.width + x]))
-  for (const loop of outline) fill(canvas, coverPolygons(strokeClosed(loop, stroke)), INK)
 }
 
 /** A thin ring round the point, kept off the colours by a paler one. */
