@@ -35,10 +35,11 @@ function leftOverShare(order: number): number {
   return order <= 4 ? 1.25 : 0.2
 }
 /**
- * Orders 1 and 2 converge like the element size or its square: the finer mesh still has most of the coarser one's error, and the
- * order below says nothing.
+ * How much of the step between the meshes counts. On 150 random plates (two meshes at order 5, solved again at order 9) the true error
+ * was up to 1.01 of it: far from the raisers both meshes are the same and share their error. At orders 1 and 2, which converge like the
+ * element size or its square, the finer mesh still has most of the coarser one's error, and the order below says nothing.
  */
-const LOW_ORDER_FACTOR = 2
+const MESH_SAFETY = 2
 /**
  * How much of the last step in order counts: on 98 random plates (321 raisers, solved again at order 10 on a finer mesh) the true
  * error was at most 0.8 of that step or of the step in mesh, whichever is larger; this leaves it a margin of two.
@@ -61,7 +62,7 @@ export function errorBar(evidence: readonly Evidence[]): Bar {
   const candidates: Bar[] = [
     { error: ROUNDING * last.peak, source: 'rounding' },
     { error: leftOverShare(last.order) * last.leftOver, source: 'free edge' },
-    { error: (low ? LOW_ORDER_FACTOR : 1) * Math.abs(last.peak - coarser.peak), source: 'mesh' }
+    { error: MESH_SAFETY * Math.abs(last.peak - coarser.peak), source: 'mesh' }
   ]
   if (lower && !low) candidates.push({ error: ORDER_SAFETY * Math.abs(last.peak - lower.peak), source: 'order' })
   return candidates.reduce((widest, bar) => (bar.error > widest.error ? bar : widest))

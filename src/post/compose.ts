@@ -97,6 +97,7 @@ export function composeVerdict({ plateCase, file, tolerance, fixedOrder, element
   })
 
   const { governing, margin } = govern(raisers)
+  const { smallestAngle, worstShape } = checkMesh(plate, mesh)
   const top = raisers.find(({ id }) => id === governing) ?? null
   const free = plate.raisers.flatMap((raiser, r) => (raiser.sharp === null ? boundarySidesOf(plate, mesh, r) : []))
   const governingMagnitude = Math.max(...last.raisers.map((reading) => reading?.magnitude ?? 0))
@@ -122,7 +123,8 @@ export function composeVerdict({ plateCase, file, tolerance, fixedOrder, element
       quads: quadCount(mesh),
       order,
       dof: last.dof,
-      smallestAngle: checkMesh(plate, mesh).smallestAngle
+      smallestAngle,
+      worstShape
     },
     time,
     warnings: [

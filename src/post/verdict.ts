@@ -86,5 +86,8 @@ export interface MeshFigures {
   readonly quads: number
   readonly order: number
   readonly dof: number
+  /** Degrees, of any element. */
   readonly smallestAngle: number
+  /** Least scaled Jacobian: 1 for equilateral triangles and squares, 0 for a degenerate element. */
+  readonly worstShape: number
 }

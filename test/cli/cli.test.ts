@@ -97,6 +97,8 @@ describe('verify', () => {
       expect(settled).toBe(true)
       expect([mesh.elements, mesh.triangles > 0, mesh.quads > 0]).toEqual([kind, kind !== 'quad', kind !== 'triangle'])
       expect(mesh.smallestAngle).toBeGreaterThan(15)
+      expect(mesh.worstShape).toBeGreaterThan(0.2)
+      expect(mesh.worstShape).toBeLessThanOrEqual(1)
     }
     const { status, err } = await run(['verify', 'strip.yaml', '--elements', 'hexagon'])
     expect(status).toBe(2)
@@ -142,6 +144,12 @@ describe('render', () => {
     const { status, files, err } = await run(['render', 'strip.yaml', '-o', 'strip.png'])
     expect([status, err]).toEqual([0, ''])
     expect([...(files.get('strip.png') as Uint8Array).subarray(0, 8)]).toEqual([137, 80, 78, 71, 13, 10, 26, 10])
+  })
+
+  it('draws the mesh over the field where that is asked for', async () => {
+    const plain = (await run(['render', 'strip.yaml', '-o', 'strip.png'])).files.get('strip.png') as Uint8Array
+    const meshed = (await run(['render', 'strip.yaml', '-o', 'strip.png', '--mesh'])).files.get('strip.png') as Uint8Array
+    expect(Buffer.from(meshed).equals(Buffer.from(plain))).toBe(false)
   })
 
   it('refuses another kind of file, and asks for a name', async () => {

@@ -51,7 +51,7 @@ function verdictOf(raisers: RaiserVerdict[]): Verdict {
     units: { length: 'mm', force: 'kN', stress: 'MPa' },
     raisers,
     checks: { balance: 0, residual: 0, freeEdge: 0 },
-    mesh: { elements: 'mixed', triangles: 4, quads: 0, order: 1, dof: 20, smallestAngle: 0.5 },
+    mesh: { elements: 'mixed', triangles: 4, quads: 0, order: 1, dof: 20, smallestAngle: 0.5, worstShape: 0.5 },
     time: { mesh: 0, solve: 0, total: 0 },
     warnings: []
   }
@@ -105,6 +105,22 @@ describe('renderFigure', () => {
   it('ends the scale at the governing peak where the field goes beyond it', () => {
     const { colourAt } = draw(9, [raiserWith(240, 80)])
     expect(colourAt(1000, 500)).toBe(colourOfStress(makeScale(0, 3), 3))
+  })
+
+  it('draws the sides inside the plate over the field where that is asked for, and only there', () => {
+    const [plain, meshed] = [draw(2, [raiserWith(240, 80)]), draw(2, [raiserWith(240, 80)], { mesh: true })]
+    const inner = Array.from(mesh.sideBoundary.keys()).filter((s) => mesh.sideBoundary[s] < 0)
+    expect(inner.length).toBeGreaterThan(0)
+    for (const s of inner) {
+      const [a, b] = [mesh.side[2 * s], mesh.side[2 * s + 1]]
+      const x = Math.floor(LEFT + (SCALE * (mesh.point[2 * a] + mesh.point[2 * b])) / 2)
+      const y = Math.floor(TOP + SCALE / 2 - (SCALE * (mesh.point[2 * a + 1] + mesh.point[2 * b + 1])) / 2)
+      const darkest = Math.min(...[-1, 0, 1].flatMap((dx) => [-1, 0, 1].map((dy) => brightness(meshed.colourAt(x + dx, y + dy)))))
+      expect(darkest).toBeLessThan(brightness(plain.colourAt(x, y)) - 20)
+    }
+    let changed = 0
+    for (let y = 100; y < 600; y++) for (let x = 300; x < 1300; x++) if (plain.colourAt(x, y) !== meshed.colourAt(x, y)) changed++
+    expect(changed).toBeLessThan(0.05 * 500 * 1000)
   })
 
   it('draws the outline where the geometry has it', () => {
