@@ -123,11 +123,12 @@ function elementsAround(mesh: Mesh): number[][] {
   return around
 }
 
-function innerVertices(mesh: Mesh): boolean[] {
-  const inner = new Array<boolean>(nodeCount(mesh)).fill(true)
+/** 1 for vertices inside, 0 for those on the boundary. */
+function innerVertices(mesh: Mesh): Uint8Array {
+  const inner = new Uint8Array(nodeCount(mesh)).fill(1)
   for (const side of mesh.boundary.side) {
-    inner[mesh.side[2 * side]] = false
-    inner[mesh.side[2 * side + 1]] = false
+    inner[mesh.side[2 * side]] = 0
+    inner[mesh.side[2 * side + 1]] = 0
   }
   return inner
 }
