@@ -83,7 +83,7 @@ function joinSources(plate: Plate, fineness: Fineness): Source[] {
       const sharp = plate.sharpCorners.find(({ at }) => at[0] === x && at[1] === y)
       let size = Infinity
       if (sharp) size = SHARP * shorter
-      else if (raiser >= 0) size = tangentAt(before, after) ? tangentSize(before.curve, after.curve) : CORNER * shorter
+      else if (raiser >= 0) size = tangentAt(before, after) ? tangentSize(before, after) : CORNER * shorter
       if (Number.isFinite(size)) sources.push({ x, y, size: size * scaleFor(fineness, raiser) })
     })
   }
@@ -96,12 +96,17 @@ function tangentAt(before: Edge, after: Edge): boolean {
   return Math.abs(ax * by - ay * bx) < 1e-3 * Math.hypot(ax, ay) * Math.hypot(bx, by) && ax * bx + ay * by > 0
 }
 
-/** Size at a tangent point: a part of the smaller radius, and of an edge that is shorter; Infinity where the curvature does not jump. */
-function tangentSize(before: Curve, after: Curve): number {
-  const a = radiusOfCurvature(before, 1)
-  const b = radiusOfCurvature(after, 0)
-  if (a === b || Math.abs(a - b) < 1e-6 * a) return Infinity
-  return Math.min(TANGENT * Math.min(a, b), CORNER * Math.min(lengthOf(before), lengthOf(after)))
+/**
+ * Size at a tangent point: a part of the smaller radius, and of an edge that is shorter. Infinity where neither the curvature jumps nor
+ * a load begins (the pressure of a pin has a kink there).
+ */
+function tangentSize(before: Edge, after: Edge): number {
+  const a = radiusOfCurvature(before.curve, 1)
+  const b = radiusOfCurvature(after.curve, 0)
+  const jumps = !(a === b || Math.abs(a - b) < 1e-6 * a)
+  const loadBegins = (before.traction === null) !== (after.traction === null)
+  if (!jumps && !loadBegins) return Infinity
+  return Math.min(TANGENT * Math.min(a, b), CORNER * Math.min(lengthOf(before.curve), lengthOf(after.curve)))
 }
 
 /**

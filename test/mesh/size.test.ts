@@ -1,9 +1,11 @@
 import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
+import type { Traction } from '../../src/case/plate.ts'
 import { sizeField } from '../../src/mesh/size.ts'
 import { leastOver } from '../../src/mesh/source-tree.ts'
 import { plateFrom } from '../support/case.ts'
 import { expectNear } from '../support/near.ts'
+import { circle, plateOf, polygon } from '../support/plates.ts'
 
 const place = fc.double({ min: -1, max: 1, noNaN: true })
 const source = fc.record({ x: place, y: place, size: fc.double({ min: 1e-6, max: 1, noNaN: true }) })
@@ -48,6 +50,18 @@ describe('size field', () => {
     const plate = bar({ holes: [{ shape: 'circle', diameter: 10, at: [100, 0] }] })
     expectNear(at(plate, 100, 5, 1), at(plate, 100, 5) / 2, { rel: 1e-9, because: 'lengths are rounded to 2^-40' })
     expect(at(plate, 20, 5, 0, 2)).toBe(at(plate, 20, 5) / 4)
+  })
+
+  it('is small at tangent points, and where the load on a smooth edge begins', () => {
+    const stepped = bar({ plate: { sections: [{ width: 60, length: 100 }, { width: 40, length: 100 }], fillets: [8] } })
+    expect(at(stepped, 108, 20)).toBeLessThan(1)
+    const push: Traction = (_, [nx, ny]) => [-nx, -ny]
+    const eye = circle([0, 0], 0.1, -1, 0, null).map((edge, i) => ({ ...edge, traction: i < 2 ? push : null }))
+    const loaded = plateOf([polygon([[-1, -1], [1, -1], [1, 1], [-1, 1]], null), eye])
+    const size = sizeField(loaded, { raiser: [0], all: 0 })
+    // quarter arcs run clockwise from +x: the load begins at +x and ends at -x
+    for (const [x, y, most] of [[0.1, 0, 0.01], [-0.1, 0, 0.01], [0, 0.1, 0.06], [0, -0.1, 0.06]]) expect(size(x, y)).toBeLessThan(most)
+    expect(size(0, 0.1)).toBeGreaterThan(0.04)
   })
 
   it('asks for elements no larger than two depths in a shallow notch', () => {
