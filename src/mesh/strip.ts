@@ -2,9 +2,10 @@
 // triangles, and the edges under them their pieces of the boundary.
 
 import { pointOn, type Plate } from '../case/plate.ts'
-import { LAYERS, type Collar } from './collar.ts'
+import type { Collar } from './collar.ts'
 import type { DividedBoundary, Segment } from './divide.ts'
 import type { Filling } from './fill.ts'
+import { LAYERS } from './rail.ts'
 
 /** All nodes and elements of a plate and the pieces of its boundary. */
 export interface Elements {

@@ -1,11 +1,11 @@
 // The picture of the study: for each kind of element a panel with the median unknowns (across) against the error (down), one line
-// an order, labelled where it ends.
+// an order, labelled where it begins: at the coarsest mesh of that order.
 
 import { blankCanvas, fill, type Canvas } from '../../src/post/draw/canvas.ts'
 import { coverPolygons } from '../../src/post/draw/coverage.ts'
 import { openFont } from '../../src/post/draw/font.ts'
 import { encodePng } from '../../src/post/draw/png.ts'
-import { strokeLine } from '../../src/post/draw/stroke.ts'
+import { circle, strokeLine } from '../../src/post/draw/stroke.ts'
 import { writeText, type TextStyle } from '../../src/post/draw/text.ts'
 
 /** A line of a panel: unknowns (infinite where the error is not reached) for each of the errors. */
@@ -44,20 +44,20 @@ export function drawPanels(panels: readonly Panel[], errors: readonly number[]):
     writeText(canvas, title, panel.title, x0, top - 24)
     for (const dof of DOFS) {
       line(canvas, xOf(dof), top, xOf(dof), top + height, 1, RULE)
-      writeText(canvas, small, dof.toLocaleString('en').replaceAll(',', ' '), xOf(dof), top + height + 28, 'middle')
+      // the last one would run into the next panel
+      if (dof < DOFS[DOFS.length - 1]) writeText(canvas, small, dof.toLocaleString('en').replaceAll(',', ' '), xOf(dof), top + height + 28, 'middle')
     }
     for (let power = Math.round(Math.log10(most)); power >= Math.round(Math.log10(least)); power--) {
       line(canvas, x0, yOf(10 ** power), x0 + width, yOf(10 ** power), 1, RULE)
       if (p === 0) writeText(canvas, small, `1e${power}`, x0 - 12, yOf(10 ** power) + 7, 'end')
     }
     for (const { label, colour, dof } of panel.lines) {
-      let last = -1
-      for (let i = 0; i < errors.length; i++) {
-        if (!Number.isFinite(dof[i])) continue
-        if (last >= 0) line(canvas, xOf(dof[last]), yOf(errors[last]), xOf(dof[i]), yOf(errors[i]), 3, colour)
-        last = i
-      }
-      if (last >= 0) writeText(canvas, { font, size: 22, colour }, label, xOf(dof[last]) + 8, yOf(errors[last]) + 6)
+      // one mesh reaches many errors: the smallest of them is the point that stands for it
+      const points = errors.flatMap((error, i) => (Number.isFinite(dof[i]) && dof[i] !== dof[i + 1] ? [[xOf(dof[i]), yOf(error)]] : []))
+      points.slice(1).forEach(([x, y], i) => line(canvas, points[i][0], points[i][1], x, y, 3, colour))
+      const [x, y] = points[0]
+      fill(canvas, coverPolygons([circle(x, y, 5)]), colour)
+      writeText(canvas, { font, size: 22, colour }, label, x, y - 12, 'middle')
     }
     writeText(canvas, small, 'unknowns', x0 + width / 2, top + height + 62, 'middle')
   })
