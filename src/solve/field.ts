@@ -6,7 +6,7 @@ import { edgeUnder, elementCount, nodesOf, type Mesh } from '../mesh/mesh.ts'
 import { dofMap, elementDofs, elementSigns, firstInner } from './dofs.ts'
 import { elasticity } from './element.ts'
 import { quadShape, type QuadSpace } from './quad.ts'
-import { triangleShape, type ElementModes } from './shape.ts'
+import { triangleShape, type ElementModes, type ElementShape } from './shape.ts'
 import { sideDofs, sideFunctions } from './side.ts'
 
 /** The solved plate. Plate units: E = 1, thickness 1; stresses times `plate.unit.stress` are MPa. */
@@ -31,8 +31,7 @@ export const FIELD = 7
  * Field in one element at reference points (xi, eta interleaved): x, y, ux, uy, sxx, syy, sxy a point, 7 numbers each.
  */
 export function fieldIn(solution: Solution, element: number, reference: Float64Array): Float64Array {
-  const { plate, mesh } = solution
-  return fieldOn(solution, elementMap(mesh, bulgesOf(plate, mesh, solution.order), element), element, reference)
+  return fieldSampler(solution)(element, reference)
 }
 
 /** The field in any element of one solution at reference points: see `fieldIn`. */
@@ -40,13 +39,18 @@ export type Sampler = (element: number, reference: Float64Array) => Float64Array
 
 /** A function like `fieldIn` for many elements of one solution. */
 export function fieldSampler(solution: Solution): Sampler {
-  const bulges = bulgesOf(solution.plate, solution.mesh, solution.order)
-  return (element, reference) => fieldOn(solution, elementMap(solution.mesh, bulges, element), element, reference)
+  const { plate, mesh, order, quadSpace } = solution
+  const bulges = bulgesOf(plate, mesh, order)
+  const triangle = triangleShape(order)
+  const quad = quadShape(order, quadSpace)
+  return (element, reference) => {
+    const map = elementMap(mesh, bulges, element)
+    return fieldOn(solution, map, map.corner.length === 6 ? triangle : quad, element, reference)
+  }
 }
 
-function fieldOn(solution: Solution, map: ElementMap, element: number, reference: Float64Array): Float64Array {
-  const { plate, order, quadSpace } = solution
-  const { modes, fill } = map.corner.length === 6 ? triangleShape(order) : quadShape(order, quadSpace)
+function fieldOn(solution: Solution, map: ElementMap, { modes, fill }: ElementShape, element: number, reference: Float64Array): Float64Array {
+  const { plate } = solution
   const amplitude = amplitudesOf(solution, modes, element)
   const n = modes.count
   const { d11, d12, d33 } = elasticity(plate.nu)

@@ -28,6 +28,11 @@ export interface QuadModes extends ElementModes {
   readonly degrees: Int32Array
 }
 
+/** Number of interior functions: (order - 1)^2, in the trunk space (order - 2)(order - 3) / 2. */
+export function quadInnerCount(order: number, space: QuadSpace = QUAD_SPACE): number {
+  return space === 'product' ? (order - 1) ** 2 : (Math.max(0, order - 2) * Math.max(0, order - 3)) / 2
+}
+
 /** The index lists of a quad; 4 order functions on nodes and sides. */
 export function quadModes(order: number, space: QuadSpace = QUAD_SPACE): QuadModes {
   const byDegree: number[][] = Array.from({ length: order + 1 }, () => [])
