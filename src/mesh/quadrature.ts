@@ -53,19 +53,3 @@ export function triangleRule(n: number): Rule {
   }
   return { point, weight }
 }
-
-/** Product rule with n x n nodes on the square [-1, 1] x [-1, 1], exact for degree 2n - 1 in each variable; weights sum to 4. */
-export function squareRule(n: number): Rule {
-  const line = gaussLegendre(n)
-  const point = new Float64Array(2 * n * n)
-  const weight = new Float64Array(n * n)
-  let at = 0
-  for (let j = 0; j < n; j++) {
-    for (let i = 0; i < n; i++) {
-      point[2 * at] = line.point[i]
-      point[2 * at + 1] = line.point[j]
-      weight[at++] = line.weight[i] * line.weight[j]
-    }
-  }
-  return { point, weight }
-}

@@ -26,11 +26,11 @@ export interface Reading {
 
 /** Reads every raiser of a solution on mesh number `mesh`. */
 export function readRaisers(solution: Solution, mesh: number): Pass {
-  const { plate, order, quadSpace } = solution
+  const { plate, order } = solution
   return {
     mesh,
     order,
-    dof: dofMap(solution.mesh, order, quadSpace).all,
+    dof: dofMap(solution.mesh, order).all,
     raisers: plate.raisers.map((raiser, index) => (raiser.sharp === null ? readRaiser(solution, index) : null))
   }
 }

@@ -3,7 +3,7 @@
 // The dofs inside the elements follow, element by element: those of the triangles, then those of the quads.
 
 import { nodeCount, nodesOf, quadCount, sideCount, sidesOf, triangleCount, type Mesh } from '../mesh/mesh.ts'
-import { quadInnerCount, QUAD_SPACE, type QuadSpace } from './quad.ts'
+import { quadInnerCount } from './quad.ts'
 import { triangleModes } from './shape.ts'
 
 export interface DofMap {
@@ -23,13 +23,13 @@ export interface DofMap {
   readonly perQuad: number
 }
 
-export function dofMap(mesh: Mesh, order: number, space: QuadSpace = QUAD_SPACE): DofMap {
+export function dofMap(mesh: Mesh, order: number):  DofMap {
   const perSide = 2 * (order - 1)
   const firstSide = 2 * nodeCount(mesh)
   const outer = firstSide + perSide * sideCount(mesh)
   const triangles = triangleCount(mesh)
   const perTriangle = 2 * triangleModes(order).inner.length
-  const perQuad = 2 * quadInnerCount(order, space)
+  const perQuad = 2 * quadInnerCount(order)
   const all = outer + perTriangle * triangles + perQuad * quadCount(mesh)
   return { order, outer, all, firstSide, perSide, triangles, perTriangle, perQuad }
 }

@@ -1,13 +1,13 @@
-// Stiffness of a triangle or quad of any order, condensed onto its nodes and sides.
-// Straight triangles have a constant Jacobian, so their stiffness is a combination of three reference matrices that are
-// integrated once; curved ones and all quads are integrated by quadrature. The interior modes are eliminated densely (static
-// condensation: R.J. Guyan, AIAA J. 3 (1965) 380) and recovered afterwards. Plate units: E = 1, thickness = 1, plane stress.
+// Stiffness of a triangle or quad of any order. Straight triangles have a constant Jacobian, so their stiffness is a combination of
+// three reference matrices that are integrated once; curved ones and all quads are integrated by quadrature. Plate units: E = 1,
+// thickness = 1, plane stress.
 
 import type { ElementMap } from '../mesh/map.ts'
-import { squareRule, triangleRule } from '../mesh/quadrature.ts'
+import { triangleRule } from '../mesh/quadrature.ts'
 import { integrateGradients, tabulate, type GradientProducts, type ShapeTable } from './gradient.ts'
-import { quadShape, type QuadSpace } from './quad.ts'
+import { lineFunctions, quadModes, quadProducts, type QuadProducts } from './quad.ts'
 import { triangleShape, type ElementModes } from './shape.ts'
+import { tensorStiffness, tensorTable, type TensorTable } from './tensor.ts'
 
 /** Plane-stress elasticity for E = 1: sxx = d11 exx + d12 eyy, sxy = d33 gxy (S. Timoshenko, J.N. Goodier, art. 6). */
 export interface Elasticity {
@@ -23,6 +23,8 @@ export function elasticity(nu: number): Elasticity {
 /** All that is the same for every triangle of one order. */
 export interface ReferenceTriangle {
   readonly modes: ElementModes
+  /** The functions in the order of the stiffness: outer ones, then inner ones. */
+  readonly functions: Int32Array
   /** Integrals over the reference triangle of the products of derivatives, count x count, row by row. */
   readonly xiXi: Float64Array
   readonly xiEta: Float64Array
@@ -34,8 +36,14 @@ export interface ReferenceTriangle {
 /** All that is the same for every quad of one order. */
 export interface ReferenceQuad {
   readonly modes: ElementModes
-  readonly straight: ShapeTable
-  readonly curved: ShapeTable
+  /** The products of functions of one variable; places are those in the stiffness: outer ones, then inner ones. */
+  readonly products: QuadProducts
+  readonly straight: TensorTable
+  readonly curved: TensorTable
+}
+
+function outerThenInner({ outer, inner }: ElementModes): Int32Array {
+  return Int32Array.from([...outer, ...inner])
 }
 
 /** Quadrature points beyond the order, a direction, for curved triangles: their integrand is rational, not polynomial. */
@@ -63,6 +71,7 @@ export function referenceTriangle(order: number): ReferenceTriangle {
   }
   return {
     modes: shape.modes,
+    functions: outerThenInner(shape.modes),
     xiXi: integrate(byXi, byXi),
     xiEta: integrate(byXi, byEta),
     etaEta: integrate(byEta, byEta),
@@ -70,13 +79,19 @@ export function referenceTriangle(order: number): ReferenceTriangle {
   }
 }
 
-/** @param space which interior functions, the usual ones if left out */
-export function referenceQuad(order: number, space?: QuadSpace): ReferenceQuad {
-  const shape = quadShape(order, space)
+export function referenceQuad(order: number): ReferenceQuad {
+  const modes = quadModes(order)
+  const place = new Int32Array(modes.count)
+  outerThenInner(modes).forEach((f, i) => {
+    place[f] = i
+  })
+  const products = quadProducts(order)
+  const line = lineFunctions(order)
   return {
-    modes: shape.modes,
-    straight: tabulate(shape, squareRule(order + EXTRA_POINTS_STRAIGHT_QUAD)),
-    curved: tabulate(shape, squareRule(order + EXTRA_POINTS_CURVED_QUAD))
+    modes,
+    products: { place: products.place.map((f) => place[f]), sign: products.sign },
+    straight: tensorTable(line, order + EXTRA_POINTS_STRAIGHT_QUAD),
+    curved: tensorTable(line, order + EXTRA_POINTS_CURVED_QUAD)
   }
 }
 
@@ -125,29 +140,16 @@ function straightProducts({ modes, xiXi, xiEta, etaEta }: ReferenceTriangle, { c
 
 /**
  * Full stiffness of a triangle, square, row by row, size 2 count: dof 2i, 2i + 1 are the x and y amplitudes of
- * `functions[i]`, each multiplied by `sign[i]` (side modes of odd degree turn their sign with the side's direction).
+ * `reference.functions[i]`, each multiplied by `sign[i]` (side modes of odd degree turn their sign with the side's direction).
  */
-export function triangleStiffness(
-  reference: ReferenceTriangle,
-  map: ElementMap,
-  moduli: Elasticity,
-  functions: Int32Array,
-  sign: Float64Array
-): Float64Array {
+export function triangleStiffness(reference: ReferenceTriangle, map: ElementMap, moduli: Elasticity, sign: Float64Array): Float64Array {
   const products = map.curved ? integrateGradients(reference.table, map) : straightProducts(reference, map)
-  return stiffnessOf(products, moduli, functions, sign)
+  return stiffnessOf(products, moduli, reference.functions, sign)
 }
 
-/** Full stiffness of a quad, like that of a triangle. */
-export function quadStiffness(
-  reference: ReferenceQuad,
-  map: ElementMap,
-  moduli: Elasticity,
-  functions: Int32Array,
-  sign: Float64Array
-): Float64Array {
-  const products = integrateGradients(map.curved ? reference.curved : reference.straight, map)
-  return stiffnessOf(products, moduli, functions, sign)
+/** Full stiffness of a quad, like that of a triangle: outer functions first, then inner ones. */
+export function quadStiffness(reference: ReferenceQuad, map: ElementMap, moduli: Elasticity, sign: Float64Array): Float64Array {
+  return tensorStiffness(map.curved ? reference.curved : reference.straight, reference.products, map, moduli, sign)
 }
 
 function stiffnessOf(
@@ -173,80 +175,4 @@ function stiffnessOf(
     }
   }
   return stiffness
-}
-
-/** An element condensed onto its outer dofs. */
-export interface CondensedElement {
-  /** Square, row by row, outer x outer. */
-  readonly matrix: Float64Array
-  /** Lower Cholesky factor of the inner block, inner x inner, row by row. */
-  readonly factor: Float64Array
-  /** factor^-1 times the block that couples inner (rows) with outer dofs (columns), inner x outer, row by row. */
-  readonly coupling: Float64Array
-}
-
-/**
- * Eliminates the dofs from `outer` on: S = Koo - W^T W, W = L^-1 Kio, L L^T = Kii.
- * @param stiffness square, row by row; @param size its order; @param outer the number of leading dofs that stay
- */
-export function condense(stiffness: Float64Array, size: number, outer: number): CondensedElement {
-  const inner = size - outer
-  const factor = new Float64Array(inner * inner)
-  const coupling = new Float64Array(inner * outer)
-  for (let i = 0; i < inner; i++) {
-    const from = (outer + i) * size
-    factor.set(stiffness.subarray(from + outer, from + outer + i + 1), i * inner)
-    coupling.set(stiffness.subarray(from, from + outer), i * outer)
-  }
-  factoriseSmall(factor, inner)
-  for (let i = 0; i < inner; i++) {
-    for (let k = 0; k < i; k++) subtractRow(coupling, i * outer, k * outer, factor[i * inner + k], outer)
-    const pivot = 1 / factor[i * inner + i]
-    for (let j = 0; j < outer; j++) coupling[i * outer + j] *= pivot
-  }
-  const matrix = new Float64Array(outer * outer)
-  for (let i = 0; i < outer; i++) {
-    const row = matrix.subarray(i * outer, (i + 1) * outer)
-    row.set(stiffness.subarray(i * size, i * size + outer))
-    for (let k = 0; k < inner; k++) subtractScaled(row, coupling, k * outer, coupling[k * outer + i], outer)
-  }
-  return { matrix, factor, coupling }
-}
-
-/** In-place lower Cholesky factor of a small dense matrix, row by row. */
-function factoriseSmall(matrix: Float64Array, n: number): void {
-  for (let i = 0; i < n; i++) {
-    for (let j = 0; j <= i; j++) {
-      let sum = matrix[i * n + j]
-      for (let k = 0; k < j; k++) sum -= matrix[i * n + k] * matrix[j * n + k]
-      matrix[i * n + j] = i === j ? Math.sqrt(sum) : sum / matrix[j * n + j]
-    }
-  }
-}
-
-/** In place: row at `to` minus factor times the row at `from`, both of one array. */
-function subtractRow(array: Float64Array, to: number, from: number, factor: number, length: number): void {
-  for (let j = 0; j < length; j++) array[to + j] -= factor * array[from + j]
-}
-
-function subtractScaled(row: Float64Array, array: Float64Array, from: number, factor: number, length: number): void {
-  for (let j = 0; j < length; j++) row[j] -= factor * array[from + j]
-}
-
-/** Inner amplitudes that belong to the outer ones (no load inside): ui = -L^-T W uo. */
-export function recoverInner({ factor, coupling }: CondensedElement, outer: Float64Array): Float64Array {
-  const n = outer.length
-  const inner = coupling.length / n
-  const u = new Float64Array(inner)
-  for (let i = 0; i < inner; i++) {
-    let sum = 0
-    for (let j = 0; j < n; j++) sum -= coupling[i * n + j] * outer[j]
-    u[i] = sum
-  }
-  for (let i = inner - 1; i >= 0; i--) {
-    let sum = u[i]
-    for (let k = i + 1; k < inner; k++) sum -= factor[k * inner + i] * u[k]
-    u[i] = sum / factor[i * inner + i]
-  }
-  return u
 }

@@ -5,7 +5,7 @@ import { bulgesOf, mapPoint, sideTangent, elementMap, type ElementMap } from '..
 import { edgeUnder, elementCount, nodesOf, type Mesh } from '../mesh/mesh.ts'
 import { dofMap, elementDofs, elementSigns, firstInner } from './dofs.ts'
 import { elasticity } from './element.ts'
-import { quadShape, type QuadSpace } from './quad.ts'
+import { quadShape } from './quad.ts'
 import { triangleShape, type ElementModes, type ElementShape } from './shape.ts'
 import { sideDofs, sideFunctions } from './side.ts'
 
@@ -14,8 +14,6 @@ export interface Solution {
   readonly plate: Plate
   readonly mesh: Mesh
   readonly order: number
-  /** The interior functions of the quads, the usual ones if left out. */
-  readonly quadSpace?: QuadSpace
   /** All amplitudes: the outer dofs, then those inside each element (see dofs.ts). */
   readonly coefficient: Float64Array
   /** |Ku - f| / (|K| |u| + |f|) of the condensed system, maximum norms. */
@@ -39,10 +37,10 @@ export type Sampler = (element: number, reference: Float64Array) => Float64Array
 
 /** A function like `fieldIn` for many elements of one solution. */
 export function fieldSampler(solution: Solution): Sampler {
-  const { plate, mesh, order, quadSpace } = solution
+  const { plate, mesh, order } = solution
   const bulges = bulgesOf(plate, mesh, order)
   const triangle = triangleShape(order)
-  const quad = quadShape(order, quadSpace)
+  const quad = quadShape(order)
   return (element, reference) => {
     const map = elementMap(mesh, bulges, element)
     return fieldOn(solution, map, map.corner.length === 6 ? triangle : quad, element, reference)
@@ -86,9 +84,9 @@ function fieldOn(solution: Solution, map: ElementMap, { modes, fill }: ElementSh
 
 /** Amplitudes (x, y interleaved) of an element's shape functions, in the order of its `ElementShape.fill`. */
 function amplitudesOf(
-  { mesh, order, quadSpace, coefficient }: Solution, { count, outer, inner }: ElementModes, element: number
+  { mesh, order, coefficient }: Solution, { count, outer, inner }: ElementModes, element: number
 ): Float64Array {
-  const dofs = dofMap(mesh, order, quadSpace)
+  const dofs = dofMap(mesh, order)
   const sign = elementSigns(mesh, order, count, element)
   const dof = elementDofs(mesh, dofs, element)
   const amplitude = new Float64Array(2 * count)

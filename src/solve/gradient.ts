@@ -1,5 +1,5 @@
 // Products of the shape functions' gradients, integrated over one element by quadrature: what every stiffness is made of.
-// The sum over the points is the most expensive part of a curved element's or a quad's stiffness.
+// For curved triangles; quads have a cheaper way (tensor.ts).
 
 import { mapPoint, type ElementMap } from '../mesh/map.ts'
 import type { Rule } from '../mesh/quadrature.ts'

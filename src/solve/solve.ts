@@ -4,25 +4,21 @@ import type { Plate } from '../case/plate.ts'
 import { bulgesOf, elementMap } from '../mesh/map.ts'
 import { elementCount, nodeCount, nodesOf, sideCount, sidesOf, triangleCount, type Mesh } from '../mesh/mesh.ts'
 import { dofMap, elementDofs, elementSigns, firstInner, type DofMap } from './dofs.ts'
-import {
-  condense, elasticity, quadStiffness, recoverInner, referenceQuad, referenceTriangle, triangleStiffness, type CondensedElement
-} from './element.ts'
+import { condense, recoverInner, type CondensedElement } from './condense.ts'
+import { elasticity, quadStiffness, referenceQuad, referenceTriangle, triangleStiffness } from './element.ts'
 import type { Solution } from './field.ts'
 import { imbalance, loadVector } from './load.ts'
-import { QUAD_SPACE, type QuadSpace } from './quad.ts'
-import type { ElementModes } from './shape.ts'
 import { analyse, factorise, solveRefined, type CliqueGraph } from './sparse/index.ts'
 
 /**
  * Displacements of the plate under its tractions, at one order on one mesh.
  * The tractions balance, so three supports take the rigid-body motions away without a reaction; that is checked.
- * @param quadSpace the interior functions of quads
  * @throws Error when the plate falls apart (a bug: a mesh of one piece does not)
  */
-export function solvePlate(plate: Plate, mesh: Mesh, order: number, quadSpace: QuadSpace = QUAD_SPACE): Solution {
-  const dofs = dofMap(mesh, order, quadSpace)
+export function solvePlate(plate: Plate, mesh: Mesh, order: number): Solution {
+  const dofs = dofMap(mesh, order)
   const load = loadVector(plate, mesh, dofs)
-  const elements = condensedElements(plate, mesh, order, quadSpace)
+  const elements = condensedElements(plate, mesh, order)
   const graph = cliqueGraph(mesh, dofs)
   const fixed = rigidSupports(mesh, dofs)
   const symbolic = analyse(graph)
@@ -37,15 +33,13 @@ export function solvePlate(plate: Plate, mesh: Mesh, order: number, quadSpace: Q
     coefficient.set(recoverInner(element, own), firstInner(dofs, e))
   })
   const balance = Math.max(imbalance(plate), reaction(mesh, dofs, elements, fixed, x, load))
-  return { plate, mesh, order, quadSpace, coefficient, residual, balance }
+  return { plate, mesh, order, coefficient, residual, balance }
 }
 
 /** The condensed stiffness of every element, triangles first, then quads. */
-function condensedElements(plate: Plate, mesh: Mesh, order: number, quadSpace: QuadSpace): CondensedElement[] {
+function condensedElements(plate: Plate, mesh: Mesh, order: number): CondensedElement[] {
   const triangle = referenceTriangle(order)
-  const quad = referenceQuad(order, quadSpace)
-  const triangleFunctions = outerThenInner(triangle.modes)
-  const quadFunctions = outerThenInner(quad.modes)
+  const quad = referenceQuad(order)
   const bulges = bulgesOf(plate, mesh, order)
   const moduli = elasticity(plate.nu)
   const triangles = triangleCount(mesh)
@@ -53,16 +47,9 @@ function condensedElements(plate: Plate, mesh: Mesh, order: number, quadSpace: Q
     const map = elementMap(mesh, bulges, e)
     const { count, outer } = (e < triangles ? triangle : quad).modes
     const sign = elementSigns(mesh, order, count, e)
-    const stiffness =
-      e < triangles
-        ? triangleStiffness(triangle, map, moduli, triangleFunctions, sign)
-        : quadStiffness(quad, map, moduli, quadFunctions, sign)
+    const stiffness = e < triangles ? triangleStiffness(triangle, map, moduli, sign) : quadStiffness(quad, map, moduli, sign)
     return condense(stiffness, 2 * count, 2 * outer.length)
   })
-}
-
-function outerThenInner({ outer, inner }: ElementModes): Int32Array {
-  return Int32Array.from([...outer, ...inner])
 }
 
 /** Which blocks of dofs (nodes, then sides where the order gives them modes) couple: a clique an element. */

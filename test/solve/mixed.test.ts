@@ -5,7 +5,6 @@ import { elementCount, nodesOf, quadCount, triangleCount, type Mesh } from '../.
 import { numberSides } from '../../src/mesh/number.ts'
 import { dofMap, elementDofs, firstInner } from '../../src/solve/dofs.ts'
 import { edgeStress, FIELD, fieldIn, fieldSampler, sideReference, stressAtPoint, type Solution } from '../../src/solve/field.ts'
-import type { QuadSpace } from '../../src/solve/quad.ts'
 import { solvePlate } from '../../src/solve/solve.ts'
 import { circle, plateOf, polygon } from '../support/plates.ts'
 import { expectNear } from '../support/near.ts'
@@ -67,8 +66,8 @@ function mixedMesh(): Mesh {
 
 describe('a mesh of straight triangles and general quads', () => {
   const mesh = mixedMesh()
-  const solved = (field: StressField, order: number, space: QuadSpace) =>
-    solvePlate(plateOf([polygon(corners, tractionOf(field))], 0.29), mesh, order, space)
+  const solved = (field: StressField, order: number) =>
+    solvePlate(plateOf([polygon(corners, tractionOf(field))], 0.29), mesh, order)
 
   it('numbers the dofs inside triangles, then those inside quads, behind all others', () => {
     const dofs = dofMap(mesh, 5)
@@ -81,35 +80,31 @@ describe('a mesh of straight triangles and general quads', () => {
 
   it('gives uniform stress exactly at every order', () => {
     const uniform: StressField = () => [0.7, -0.4, 0.3]
-    for (const space of ['trunk', 'product'] as const) {
-      for (let order = 1; order <= 8; order++) {
-        const worst = worstStress(solved(uniform, order, space), uniform)
-        expectNear(worst, 0, { abs: 2e-13, because: 'a linear displacement is in the space' })
-      }
+    for (let order = 1; order <= 8; order++) {
+      expectNear(worstStress(solved(uniform, order), uniform), 0, { abs: 2e-13, because: 'a linear displacement is in the space' })
     }
   })
 
-  // a polynomial of degree n in x and y is one of degree n in xi and in eta on a general quad: order n has it in the
-  // product space, order 2n in the trunk space
+  // a polynomial of degree n in x and y is one of degree n in xi and in eta on a general quad, so order n has it
   it('gives bending exactly from the order on that has it', () => {
     const bending: StressField = (x, y) => [y, 0.4 * x, 0]
-    for (const [order, space] of [[2, 'product'], [5, 'product'], [4, 'trunk'], [8, 'trunk']] as const) {
-      expectNear(worstStress(solved(bending, order, space), bending), 0, { abs: 1e-12, because: 'quadratic displacement' })
+    for (const order of [2, 5, 8]) {
+      expectNear(worstStress(solved(bending, order), bending), 0, { abs: 1e-12, because: 'quadratic displacement' })
     }
-    expect(worstStress(solved(bending, 3, 'trunk'), bending)).toBeGreaterThan(1e-4)
+    expect(worstStress(solved(bending, 1), bending)).toBeGreaterThan(1e-4)
   })
 
   it('gives a cubic displacement exactly, whose side modes turn their sign with the side', () => {
     // Airy's function x^3 y - x y^3
     const cubic: StressField = (x, y) => [-6 * x * y, 6 * x * y, 3 * y * y - 3 * x * x]
-    for (const [order, space] of [[3, 'product'], [8, 'product'], [6, 'trunk'], [7, 'trunk']] as const) {
-      expectNear(worstStress(solved(cubic, order, space), cubic), 0, { abs: 1e-11, because: 'cubic displacement' })
+    for (const order of [3, 5, 8]) {
+      expectNear(worstStress(solved(cubic, order), cubic), 0, { abs: 1e-11, because: 'cubic displacement' })
     }
   })
 
   it('has one displacement along a side that a quad and a triangle share, whatever the field', () => {
     const steep: StressField = (x, y) => [-6 * x * y ** 3, 6 * x * y, 3 * y * y - 3 * x * x]
-    const solution = solved(steep, 7, 'trunk')
+    const solution = solved(steep, 7)
     // from node 0 to node 4 of the picture: eta grows on the quad 0 1 5 4, and falls on the triangle 4 7 0
     const s = [-1, -0.8, -0.1, 0.6, 1]
     const quad = fieldIn(solution, 4, Float64Array.from(s.flatMap((x) => [-1, x])))
@@ -124,7 +119,7 @@ describe('a mesh of straight triangles and general quads', () => {
   })
 
   it('puts points of a boundary side on the boundary', () => {
-    const solution = solved(() => [1, 0, 0], 2, 'trunk')
+    const solution = solved(() => [1, 0, 0], 2)
     for (let b = 0; b < mesh.boundary.count; b++) {
       const reference = sideReference(mesh, b, [-1, 1])
       const [x0, y0, , , , , , x1, y1] = fieldIn(solution, mesh.boundary.element[b], reference)
@@ -136,7 +131,7 @@ describe('a mesh of straight triangles and general quads', () => {
 
   it('finds the stress at points of triangles and quads', () => {
     const bending: StressField = (x, y) => [y, 0.4 * x, 0]
-    const solution = solved(bending, 4, 'trunk')
+    const solution = solved(bending, 4)
     for (const [x, y] of [[1, 0.3], [1, 1], [1.9, 1], [0.1, 1], [0.7, 1.6], [0, 0], [0.5, 1.2], [2.2, 1.8]]) {
       const found = stressAtPoint(solution, x, y)
       expect(found, `${x}, ${y}`).not.toBeNull()
@@ -186,11 +181,9 @@ describe('Lame: ring of curved quads', () => {
   ] as const) {
     it(`${name}: the error falls exponentially with the order`, () => {
       const { plate, mesh } = ring(radii, outermost)
-      for (const space of ['trunk', 'product'] as const) {
-        const errors = [2, 4, 6, 8].map((order) => worstStress(solvePlate(plate, mesh, order, space), lame))
-        for (let i = 1; i < 4; i++) expect(errors[i]).toBeLessThan(0.2 * errors[i - 1])
-        expect(errors[3]).toBeLessThan(1e-3)
-      }
+      const errors = [2, 4, 6, 8].map((order) => worstStress(solvePlate(plate, mesh, order), lame))
+      for (let i = 1; i < 4; i++) expect(errors[i]).toBeLessThan(0.2 * errors[i - 1])
+      expect(errors[3]).toBeLessThan(1e-3)
     })
   }
 

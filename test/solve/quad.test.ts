@@ -1,14 +1,15 @@
 import { describe, expect, it } from 'vitest'
 import { EigenvalueDecomposition, Matrix } from 'ml-matrix'
-import type { ElementMap } from '../../src/mesh/map.ts'
-import { gaussLegendre, squareRule } from '../../src/mesh/quadrature.ts'
-import { condense, elasticity, quadStiffness, recoverInner, referenceQuad } from '../../src/solve/element.ts'
-import { quadModes, quadShape, type QuadSpace } from '../../src/solve/quad.ts'
+import { circularArc } from '../../src/case/plate.ts'
+import { bulgeOf, mapPoint, type ElementMap } from '../../src/mesh/map.ts'
+import { gaussLegendre } from '../../src/mesh/quadrature.ts'
+import { condense, recoverInner } from '../../src/solve/condense.ts'
+import { elasticity, quadStiffness, referenceQuad } from '../../src/solve/element.ts'
+import { quadModes, quadProducts, quadShape } from '../../src/solve/quad.ts'
 import { triangleShape, type ElementShape } from '../../src/solve/shape.ts'
 import { sideFunctions } from '../../src/solve/side.ts'
 import { expectNear } from '../support/near.ts'
 
-const spaces: QuadSpace[] = ['trunk', 'product']
 const corner = [[-1, -1], [1, -1], [1, 1], [-1, 1]]
 
 function shapeAt({ modes, fill }: ElementShape, xi: number, eta: number) {
@@ -28,41 +29,56 @@ const quads = {
   slender: straightQuad(0, 0, 0.3, 0.1, 0.25, 3, -0.1, 2.5)
 }
 
-function stiffnessOf(order: number, map: ElementMap, space: QuadSpace = 'trunk', nu = 0.3) {
-  const reference = referenceQuad(order, space)
-  const { count, outer, inner } = reference.modes
+function stiffnessOf(order: number, map: ElementMap, nu = 0.3) {
+  const reference = referenceQuad(order)
+  const { count, outer } = reference.modes
   const sign = new Float64Array(count).fill(1)
-  const matrix = quadStiffness(reference, map, elasticity(nu), Int32Array.from([...outer, ...inner]), sign)
+  const matrix = quadStiffness(reference, map, elasticity(nu), sign)
   return { size: 2 * count, outer: 2 * outer.length, matrix }
+}
+
+/** The same stiffness point by point: the integral of B^T D B, outer functions first. */
+function plainStiffness(order: number, map: ElementMap, points: number, nu = 0.3): Float64Array {
+  const { modes, fill } = quadShape(order)
+  const functions = [...modes.outer, ...modes.inner]
+  const { d11, d12, d33 } = elasticity(nu)
+  const { point, weight } = gaussLegendre(points)
+  const size = 2 * modes.count
+  const stiffness = new Float64Array(size * size)
+  const [value, byXi, byEta] = [0, 1, 2].map(() => new Float64Array(modes.count))
+  const at = new Float64Array(6)
+  point.forEach((xi, p) => {
+    point.forEach((eta, q) => {
+      fill(xi, eta, value, byXi, byEta)
+      mapPoint(map, xi, eta, at)
+      const jacobian = at[2] * at[5] - at[3] * at[4]
+      const w = weight[p] * weight[q] * jacobian
+      const x = functions.map((f) => (at[5] * byXi[f] - at[3] * byEta[f]) / jacobian)
+      const y = functions.map((f) => (at[2] * byEta[f] - at[4] * byXi[f]) / jacobian)
+      for (let i = 0; i < modes.count; i++) {
+        for (let j = 0; j < modes.count; j++) {
+          stiffness[2 * i * size + 2 * j] += w * (d11 * x[i] * x[j] + d33 * y[i] * y[j])
+          stiffness[2 * i * size + 2 * j + 1] += w * (d12 * x[i] * y[j] + d33 * y[i] * x[j])
+          stiffness[(2 * i + 1) * size + 2 * j] += w * (d12 * y[i] * x[j] + d33 * x[i] * y[j])
+          stiffness[(2 * i + 1) * size + 2 * j + 1] += w * (d11 * y[i] * y[j] + d33 * x[i] * x[j])
+        }
+      }
+    })
+  })
+  return stiffness
 }
 
 const rows = (matrix: Float64Array, n: number) =>
   Array.from({ length: n }, (_, i) => Array.from(matrix.subarray(i * n, (i + 1) * n)))
 
-describe('quadrature on the square', () => {
-  it('integrates every monomial up to its degree in each variable', () => {
-    const { point, weight } = squareRule(4)
-    for (let a = 0; a <= 7; a++) {
-      for (let b = 0; b <= 7; b++) {
-        let sum = 0
-        weight.forEach((w, q) => (sum += w * point[2 * q] ** a * point[2 * q + 1] ** b))
-        const exact = a % 2 === 1 || b % 2 === 1 ? 0 : 4 / ((a + 1) * (b + 1))
-        expectNear(sum, exact, { abs: 1e-14, because: 'integral of xi^a over [-1, 1] is 2 / (a + 1) for even a' })
-      }
-    }
-  })
-})
-
 describe('shape functions of the quad', () => {
   it('are as many as the space has', () => {
-    // 4 order on the boundary and (order - 2)(order - 3) / 2 or (order - 1)^2 inside (B. Szabo, I. Babuska, ch. 6)
-    expect([1, 2, 3, 4, 5, 8].map((order) => quadModes(order, 'trunk').count)).toEqual([4, 8, 12, 17, 23, 47])
-    expect([1, 2, 3, 4, 5, 8].map((order) => quadModes(order, 'product').count)).toEqual([4, 9, 16, 25, 36, 81])
-    expect(Array.from(quadModes(6, 'trunk').degrees)).toEqual([2, 2, 2, 3, 3, 2, 2, 4, 3, 3, 4, 2])
+    // 4 order on the boundary and (order - 1)^2 inside (B. Szabo, I. Babuska, ch. 6)
+    expect([1, 2, 3, 4, 5, 8].map((order) => quadModes(order).count)).toEqual([4, 9, 16, 25, 36, 81])
   })
 
   it('differentiate to their own derivatives', () => {
-    const shape = quadShape(9, 'product')
+    const shape = quadShape(9)
     const h = 1e-6
     for (const [xi, eta] of [[0.2, 0.3], [-0.61, 0.17], [0.05, -0.9]]) {
       const { byXi, byEta } = shapeAt(shape, xi, eta)
@@ -76,16 +92,14 @@ describe('shape functions of the quad', () => {
   })
 
   it('nest: the functions of a lower order are the leading ones of a higher order', () => {
-    for (const space of spaces) {
-      const low = shapeAt(quadShape(5, space), 0.31, -0.24).value
-      const high = shapeAt(quadShape(9, space), 0.31, -0.24).value
-      low.forEach((value, i) => expect(high[i]).toBe(value))
-    }
+    const low = shapeAt(quadShape(5), 0.31, -0.24).value
+    const high = shapeAt(quadShape(9), 0.31, -0.24).value
+    low.forEach((value, i) => expect(high[i]).toBe(value))
   })
 
   it('agree with the triangle along every side, and all others vanish there', () => {
     const order = 8
-    const quad = quadShape(order, 'product')
+    const quad = quadShape(order)
     const triangle = triangleShape(order)
     for (let side = 0; side < 4; side++) {
       for (const s of [-1, -0.9, -0.2, 0.55, 1]) {
@@ -109,11 +123,11 @@ describe('shape functions of the quad', () => {
 
   it('have interior modes whose slopes are orthonormal along each direction', () => {
     const { point, weight } = gaussLegendre(10)
-    const { modes, fill } = quadShape(7, 'product')
-    const { degrees } = quadModes(7, 'product')
+    const { modes, fill } = quadShape(7)
+    const { place } = quadProducts(7)
     const [value, byXi, byEta] = [0, 1, 2].map(() => new Float64Array(modes.count))
     // the one that is phi_i(xi) phi_2(eta)
-    const at = (i: number) => modes.inner.find((_, m) => degrees[2 * m] === i && degrees[2 * m + 1] === 2)!
+    const at = (i: number) => place[8 * i + 2]
     for (let i = 2; i <= 7; i++) {
       for (let k = 2; k <= 7; k++) {
         let sum = 0
@@ -153,7 +167,7 @@ describe('stiffness of a quad', () => {
     const mixed = [[-0.5, -0.5], [0.5, 0.5]]
     const [d11, d12, d33] = [1 / (1 - nu * nu), nu / (1 - nu * nu), 1 / (2 * (1 + nu))]
     const place = [[0, 0], [1, 0], [1, 1], [0, 1]]
-    const { matrix } = stiffnessOf(1, straightQuad(3, 4, 3 + a, 4, 3 + a, 4 + b, 3, 4 + b), 'trunk', nu)
+    const { matrix } = stiffnessOf(1, straightQuad(3, 4, 3 + a, 4, 3 + a, 4 + b, 3, 4 + b), nu)
     place.forEach(([i, j], m) => {
       place.forEach(([k, l], n) => {
         const xx = (stretch[i][k] * mass[j][l] * b) / a
@@ -188,8 +202,27 @@ describe('stiffness of a quad', () => {
     })
   }
 
+  it('by sum factorisation is what plain quadrature on the same points gives', () => {
+    const arc = circularArc([0, 0], 1, 0.2, 0.7)
+    const bulge = bulgeOf(arc, 0, 1, 5)!
+    const curved: ElementMap = {
+      corner: Float64Array.of(...arc.from, ...arc.to, 0.3, 0.4, 0.6, 0.1),
+      bulge: [bulge, null, null, null],
+      curved: true
+    }
+    for (const map of [quads.distorted, quads['almost a triangle'], quads.slender, curved]) {
+      for (const order of [1, 2, 3, 5, 8]) {
+        const points = order + (map.curved ? 3 : 2)
+        const { size, matrix } = stiffnessOf(order, map)
+        const plain = plainStiffness(order, map, points)
+        const largest = Math.max(...plain.map(Math.abs))
+        for (let i = 0; i < size * size; i++) expectNear(matrix[i], plain[i], { abs: 1e-13 * largest, because: `entry ${i} at order ${order}` })
+      }
+    }
+  })
+
   it('condensed and recovered, leaves no force on the inner amplitudes', () => {
-    const { size, outer, matrix } = stiffnessOf(4, straightQuad(-1, -1, 1, -1, 1, 1, -1, 1), 'product')
+    const { size, outer, matrix } = stiffnessOf(4, straightQuad(-1, -1, 1, -1, 1, 1, -1, 1))
     const element = condense(matrix, size, outer)
     const boundary = Float64Array.from({ length: outer }, (_, i) => Math.cos(3 * i))
     const inner = recoverInner(element, boundary)
