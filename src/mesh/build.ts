@@ -8,7 +8,7 @@ import { fillPlate } from './fill.ts'
 import type { ElementKind, Mesh } from './mesh.ts'
 import { numberSides } from './number.ts'
 import { sizeField, type Fineness } from './size.ts'
-import { smoothFilling } from './smooth.ts'
+import { smoothNodes } from './smooth.ts'
 import { splitIntoQuads } from './split.ts'
 import { frontOf, layStrips } from './strip.ts'
 
@@ -22,7 +22,9 @@ export function meshPlate(plate: Plate, fineness: Fineness, kind: ElementKind): 
   const divided = divideBoundary(plate, size)
   const collar = kind === 'triangle' ? bareCollar(divided) : planCollar(plate, divided)
   const { boundary, vertex } = frontOf(collar)
-  const laid = layStrips(plate, collar, vertex, smoothFilling(plate, fillPlate(plate, boundary, size)))
+  const filling = fillPlate(plate, boundary, size)
+  const smooth = smoothNodes(plate, { ...filling, element: filling.triangle, corners: 3 })
+  const laid = layStrips(plate, collar, vertex, { ...filling, point: smooth })
   const elements = kind === 'quad' ? splitIntoQuads(plate, laid) : laid
   const mesh = numberSides(elements.point, elements.triangle, elements.quad, elements.segments)
   checkMesh(plate, mesh)

@@ -1,8 +1,9 @@
 // A mesh of quads only: every triangle becomes three quads around its centre, every quad four. All sides are halved, so the
-// pieces fit together; a side on an edge of the plate is halved on its curve.
+// pieces fit together; a side on an edge of the plate is halved on its curve. The new mesh is smoothed.
 
 import { pointOn, type Plate } from '../case/plate.ts'
 import type { Segment } from './divide.ts'
+import { smoothNodes } from './smooth.ts'
 import type { Elements } from './strip.ts'
 
 /** The same plate in quads: three a triangle, four a quad. */
@@ -39,5 +40,7 @@ export function splitIntoQuads(plate: Plate, { point: old, triangle, quad, segme
   }
   for (let i = 0; i < triangle.length; i += 3) split(triangle.subarray(i, i + 3))
   for (let i = 0; i < quad.length; i += 4) split(quad.subarray(i, i + 4))
-  return { point: Float64Array.from(point), triangle: new Int32Array(0), quad: Int32Array.from(pieces), segments: halves }
+  const element = Int32Array.from(pieces)
+  const smooth = smoothNodes(plate, { point: Float64Array.from(point), element, corners: 4, segments: halves })
+  return { point: smooth, triangle: new Int32Array(0), quad: element, segments: halves }
 }
