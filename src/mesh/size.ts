@@ -6,7 +6,7 @@
 import Flatbush from 'flatbush'
 import { boxOf, nearestOn } from '../case/nearest.ts'
 import { derivativeOn, lengthOf, outwardNormal, pointOn, radiusOfCurvature } from '../case/plate.ts'
-import type { Curve, Edge, Plate, Point } from '../case/plate.ts'
+import type { Arc, Curve, Edge, Plate, Point, Raiser } from '../case/plate.ts'
 import { leastOver, type Source } from './source-tree.ts'
 
 /** Element size wanted at (x, y). */
@@ -29,7 +29,7 @@ const CORNER = 0.35
 /** Size at a sharp re-entrant corner, in lengths of its shorter edge: the singular field must not spoil its surroundings. */
 const SHARP = 1e-3
 /**
- * Size at the root of a notch, at most, in its depths: it matters where the depth is less than a quarter of the radius. Measured for
+ * Size on a notch's root or a fillet, at most, in the depths of the feature: it matters where the depth is less than a quarter of the radius. Measured for
  * depth 0.05 radius at order 4: 1750 unknowns and an error of 2e-5 with it, 1920 and 8e-5 without.
  */
 const SHALLOW = 2
@@ -60,8 +60,7 @@ function arcSources(plate: Plate, fineness: Fineness): Source[] {
   for (const { curve, raiser } of plate.loops.flat()) {
     if (curve.kind === 'line') continue
     const steps = 2 * Math.ceil(Math.abs(curve.sweep) / ARC_ANGLE)
-    const notch = plate.raisers[raiser]
-    const shallow = notch?.kind === 'notch' ? SHALLOW * notch.depth : Infinity
+    const shallow = SHALLOW * depthOf(curve, plate.raisers[raiser])
     for (let i = 0; i <= steps; i++) {
       const [x, y] = pointOn(curve, i / steps)
       const size = Math.min(radiusOfCurvature(curve, i / steps) * ARC_ANGLE, lengthOf(curve), shallow)
@@ -69,6 +68,12 @@ function arcSources(plate: Plate, fineness: Fineness): Source[] {
     }
   }
   return sources
+}
+
+/** Depth of the feature that an arc belongs to: of a notch; of a fillet its height over the edge that it is tangent to. */
+function depthOf(arc: Arc, raiser: Raiser | undefined): number {
+  if (raiser?.kind === 'notch') return raiser.depth
+  return raiser?.kind === 'shoulder' ? arc.axes[0] * (1 - Math.cos(arc.sweep)) : Infinity
 }
 
 /** Sources where two edges meet: tangent points with a jump of curvature, corners of raisers, sharp corners. */
@@ -97,7 +102,7 @@ function tangentAt(before: Edge, after: Edge): boolean {
 }
 
 /**
- * Size at a tangent point: a part of the smaller radius, and of an edge that is shorter. Infinity where neither the curvature jumps nor
+ * Size at a tangent point: a part of the smaller radius, or of the length of an arc or line that is shorter. Infinity where neither the curvature jumps nor
  * a load begins (the pressure of a pin has a kink there).
  */
 function tangentSize(before: Edge, after: Edge): number {
@@ -106,7 +111,8 @@ function tangentSize(before: Edge, after: Edge): number {
   const jumps = !(a === b || Math.abs(a - b) < 1e-6 * a)
   const loadBegins = (before.traction === null) !== (after.traction === null)
   if (!jumps && !loadBegins) return Infinity
-  return Math.min(TANGENT * Math.min(a, b), CORNER * Math.min(lengthOf(before.curve), lengthOf(after.curve)))
+  const lengths = [before, after].map(({ curve }) => (curve.kind === 'arc' ? TANGENT : CORNER) * lengthOf(curve))
+  return Math.min(TANGENT * Math.min(a, b), ...lengths)
 }
 
 /**
