@@ -1,5 +1,5 @@
 // A case in, its verdict out. This is the whole pipe on one screen: plate, mesh, displacements, peaks, error bars; and the only
-// loop: while a bar is wider than the tolerance, raise the order, then refine near the raisers that are not settled.
+// loop: while a bar is wider than the tolerance, raise the order as long as that pays, then refine near the raisers that are open.
 
 import { buildPlate } from './case/build.ts'
 import type { Plate } from './case/plate.ts'
@@ -11,14 +11,14 @@ import { barsOf, composeVerdict, unsettledRaisers } from './post/compose.ts'
 import { readRaisers, type Pass } from './post/pass.ts'
 import type { Verdict } from './post/verdict.ts'
 import type { Solution } from './solve/field.ts'
-import { solvePlate } from './solve/solve.ts'
+import { solveOrders } from './solve/solve.ts'
 
 export interface VerifyOptions {
   /** The case's name in the verdict's `file`. */
   readonly file: string
   /** Half-width wanted on every peak, relative; the case's own by default. */
   readonly tolerance?: number
-  /** A fixed order: the loop refines the mesh only, twice at most from order 3 up. */
+  /** A fixed order on one mesh; up to order 2, which says nothing by itself, the mesh is refined until its bar holds. */
   readonly order?: number
   /** Kind of elements; quads along arcs and triangles elsewhere if left out. */
   readonly elements?: ElementKind
@@ -33,14 +33,17 @@ export interface Verification {
   readonly solution: Solution
 }
 
-/** Orders of the accuracy loop; the order below each is solved too, to show what the higher one gained. */
-const ORDERS = [5, 7]
+/** Orders of the first solves on a mesh, and the highest that the loop goes to; each bar compares an order with the two below. */
+const FIRST_ORDER = 6
+const HIGHEST_ORDER = 8
 /** Meshes that the loop makes at most, each with half the element size near unsettled raisers. */
 const MOST_MESHES = 7
 /** Unknowns at which the loop stops refining. */
 const MOST_DOFS = 200_000
-/** Orders up to this one are refined everywhere: their error is not only at the raisers. */
+/** Orders up to this one converge with the mesh only, which is refined everywhere: their error is not only at the raisers. */
 const LOW_ORDER = 2
+/** A further order on the same mesh is worth its cost where the one before cut the widest bar at least to this part. */
+const WORTH_AN_ORDER = 0.5
 
 /**
  * Solves a case until every raiser's error bar is within the tolerance, or says that it is not.
@@ -51,7 +54,6 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
   const start = clock()
   const tolerance = options.tolerance ?? plateCase.tolerance
   const elements = options.elements ?? 'mixed'
-  const orders = options.order ? [options.order] : ORDERS
   const plate = buildPlate(plateCase)
   const time = { mesh: 0, solve: 0, total: 0 }
   const passes: Pass[] = []
@@ -62,44 +64,47 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
     return made
   }
   const makeMesh = (fineness: Fineness) => timed('mesh', () => meshPlate(plate, fineness, elements))
-  const solveAt = (on: { mesh: Mesh; number: number }, order: number): Solution => {
-    const solution = timed('solve', () => solvePlate(plate, on.mesh, order))
-    passes.push(readRaisers(solution, on.number))
-    return solution
+  const solveAt = (mesh: Mesh, number: number, orders: readonly number[]): Solution => {
+    const solutions = timed('solve', () => solveOrders(plate, mesh, orders))
+    for (const solution of solutions) passes.push(readRaisers(solution, number))
+    return solutions[solutions.length - 1]
   }
-  const everywhere = orders[0] <= LOW_ORDER
-  const refine = (fineness: Fineness, at: readonly number[]) =>
-    everywhere ? { ...fineness, all: fineness.all + 1 } : finer(plate, fineness, at)
+  const stillOpen = () => unsettledRaisers(passes, barsOf(passes, plate.raisers.length), tolerance)
 
+  const fixed = options.order ?? null
+  const isLow = fixed !== null && fixed <= LOW_ORDER
   let fineness: Fineness = { raiser: plate.raisers.map(() => 0), all: 0 }
-  let coarse = { mesh: makeMesh(fineness), number: 1 }
-  fineness = refine(fineness, plate.raisers.map((_, r) => r))
-  let fine = { mesh: makeMesh(fineness), number: 2 }
+  let order = fixed ?? FIRST_ORDER
   let solution: Solution
-  let rung = 0
-  for (let compareCoarse = true; ; ) {
-    const order = orders[rung]
-    if (compareCoarse) solveAt(coarse, order)
-    if (order > 1) solveAt(fine, order - 1)
-    solution = solveAt(fine, order)
-
-    const unsettled = unsettledRaisers(passes, barsOf(passes, plate.raisers.length), tolerance)
-    if (unsettled.length === 0 || (options.order && !everywhere)) break
-    if (rung + 1 < orders.length) {
-      rung++
-      compareCoarse = true
-      continue
+  for (let number = 1; ; number++) {
+    const mesh = makeMesh(fineness)
+    solution = solveAt(mesh, number, isLow ? [order] : threeUpTo(order))
+    let open = stillOpen()
+    while (fixed === null && open.length > 0 && order < HIGHEST_ORDER && isWorthAnOrder(passes, open)) {
+      solution = solveAt(mesh, number, [++order])
+      open = stillOpen()
     }
-    const growth = everywhere ? 4 : 1
-    if (fine.number === MOST_MESHES || growth * passes[passes.length - 1].dof > MOST_DOFS) break
-    fineness = refine(fineness, unsettled)
-    coarse = fine
-    fine = { mesh: makeMesh(fineness), number: coarse.number + 1 }
-    compareCoarse = false
+    if (isLow ? number > 1 && open.length === 0 : open.length === 0 || fixed !== null) break
+    const next = passes[passes.length - 1].dof * (isLow ? 4 : 1)
+    if (number === MOST_MESHES || next > MOST_DOFS) break
+    fineness = isLow ? { ...fineness, all: number } : finer(plate, fineness, open)
   }
   time.total = clock() - start
-  const fixedOrder = options.order ?? null
-  return { verdict: composeVerdict({ plateCase, file: options.file, tolerance, fixedOrder, elements, passes, solution, time }), plate, solution }
+  return { verdict: composeVerdict({ plateCase, file: options.file, tolerance, fixedOrder: fixed, elements, passes, solution, time }), plate, solution }
+}
+
+/** An order and the two below it, as far as there are any. */
+function threeUpTo(order: number): number[] {
+  return [order - 2, order - 1, order].filter((p) => p >= 1)
+}
+
+/** True where the last order brought the open raisers much nearer to their limits than the order before had. */
+function isWorthAnOrder(passes: readonly Pass[], open: readonly number[]): boolean {
+  const [twoBelow, below, last] = passes.slice(-3).map(({ raisers }) => raisers)
+  return open.every((r) => {
+    const [a, b, c] = [twoBelow[r]!.magnitude, below[r]!.magnitude, last[r]!.magnitude]
+    return Math.abs(c - b) <= WORTH_AN_ORDER * Math.abs(b - a)
+  })
 }
 
 /** One halving more at the given raisers, and at sharp ones: their singular fields reach the others. */

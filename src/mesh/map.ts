@@ -17,7 +17,7 @@ export type Bulge = Float64Array
 const TERMS = 10
 
 /** Lowest order whose elements follow arcs exactly. */
-const EXACT_FROM = 3
+export const EXACT_FROM = 3
 
 /**
  * Bulge of the part t0 .. t1 of an arc for elements of an order, null where the side is straight. With U, V the arc's conjugate radii at the middle of the part and

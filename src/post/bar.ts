@@ -1,9 +1,10 @@
-// The error bar of a raiser's peak: what the sequence of orders and the refined mesh say, and at the peak itself the stress left
-// over on the free edge, which is zero in truth.
+// The error bar of a raiser's peak: what the sequence of orders on one mesh says, and at the peak itself what is zero in truth and left
+// over all the same: the normal and shear stress on the free edge, and the step of the edge stress from one side to the next.
 //
-// With K(m, p) the peak on mesh m at order p, m the finer mesh: |K(m, p) - K(m - 1, p)| is about the error of the coarser mesh,
-// several times that of the finer one; |K(m, p) - K(m, p - 1)| is about the error of the lower order. Either can be small by
-// chance where a sequence crosses the truth; the stress left over on the free edge then still shows how far the field is from it.
+// With K(p) the peak at order p: |K(p) - K(p - 1)| is about the error of order p - 1, several times that of order p. It can be small by
+// chance where a sequence crosses the truth; then the order before shows it, and what is left over shows how far the field is
+// from the true one. A raised order makes every element better, also those far from the raiser that may spoil its peak; a mesh that is
+// refined at the raiser does not. Orders 1 and 2 converge with the mesh only, and there the step between two meshes counts.
 
 /** What one solve says about a raiser; magnitudes in plate stress units. */
 export interface Evidence {
@@ -14,10 +15,12 @@ export interface Evidence {
   readonly peak: number
   /** Largest |normal or shear stress| on the free sides at the peak. */
   readonly leftOver: number
+  /** Largest |step| of the edge stress at the ends of the side with the peak. */
+  readonly step: number
 }
 
 /** Which part of the evidence set the bar. */
-export type BarSource = 'mesh' | 'order' | 'free edge' | 'rounding'
+export type BarSource = 'mesh' | 'order' | 'two orders' | 'free edge' | 'step' | 'rounding'
 
 export interface Bar {
   /** Half-width, in the unit of the peaks. */
@@ -25,45 +28,44 @@ export interface Bar {
   readonly source: BarSource
 }
 
+/** How much of each piece of evidence counts. */
+const LAST_ORDER = 2
+const TWO_ORDERS = 0.2
+const STEP = 0.6
 /**
- * How much of the stress left over counts. On the check plates the error of the peak was up to 3.5 times it at order 1 (constant
- * strain says little of the gradient at an edge) and up to 0.9 of it from order 2 on. Up to order 4 the steps in mesh and order are
- * still irregular and it has to carry the bar; from order 5 on they do (the error was at most 0.4 of them) and it only guards.
+ * Of the stress left over: the error of the peak was up to 3.5 times it at order 1 (constant strain says little of the gradient at an
+ * edge) and up to 0.9 of it from order 2 on. Up to order 4 the steps are still irregular and it has to carry the bar; from order 5
+ * on they do, and it only guards.
  */
 function leftOverShare(order: number): number {
   if (order === 1) return 5
   return order <= 4 ? 1.25 : 0.2
 }
-/**
- * How much of the step between the meshes counts. On 150 random plates (two meshes at order 5, solved again at order 9) the true error
- * was up to 1.01 of it: far from the raisers both meshes are the same and share their error. At orders 1 and 2, which converge like the
- * element size or its square, the finer mesh still has most of the coarser one's error, and the order below says nothing.
- */
-const MESH_SAFETY = 2
-/**
- * How much of the last step in order counts: on 98 random plates (321 raisers, solved again at order 10 on a finer mesh) the true
- * error was at most 0.8 of that step or of the step in mesh, whichever is larger; this leaves it a margin of two.
- */
-const ORDER_SAFETY = 1.5
+/** Of the step between two meshes at orders 1 and 2: the finer mesh still has most of the coarser one's error. */
+const LAST_MESH = 2
+/** Orders up to this one are judged by two meshes. */
+const LOW_ORDER = 2
 /** Relative error that rounding may leave in a peak. */
 const ROUNDING = 1e-10
 
-/**
- * The bar of the last solve in `evidence`, Infinity while there is nothing to compare it with.
- * The last solve is compared with the same order on the mesh before and with the next lower order on its own mesh.
- */
+/** The bar of the last solve in `evidence`, Infinity while there is nothing to compare it with. */
 export function errorBar(evidence: readonly Evidence[]): Bar {
   const last = evidence[evidence.length - 1]
-  const same = (mesh: number, order: number) => evidence.findLast((e) => e.mesh === mesh && e.order === order)
-  const coarser = same(last.mesh - 1, last.order)
-  const lower = same(last.mesh, last.order - 1)
-  if (!coarser) return { error: Infinity, source: 'mesh' }
-  const low = last.order <= 2
+  const peakAt = (mesh: number, order: number) => evidence.findLast((e) => e.mesh === mesh && e.order === order)?.peak
   const candidates: Bar[] = [
     { error: ROUNDING * last.peak, source: 'rounding' },
-    { error: leftOverShare(last.order) * last.leftOver, source: 'free edge' },
-    { error: MESH_SAFETY * Math.abs(last.peak - coarser.peak), source: 'mesh' }
+    { error: leftOverShare(last.order) * last.leftOver, source: 'free edge' }
   ]
-  if (lower && !low) candidates.push({ error: ORDER_SAFETY * Math.abs(last.peak - lower.peak), source: 'order' })
+  if (last.order <= LOW_ORDER) {
+    const coarser = peakAt(last.mesh - 1, last.order)
+    candidates.push({ error: coarser === undefined ? Infinity : LAST_MESH * Math.abs(last.peak - coarser), source: 'mesh' })
+  } else {
+    const [below, twoBelow] = [peakAt(last.mesh, last.order - 1), peakAt(last.mesh, last.order - 2)]
+    candidates.push(
+      { error: below === undefined ? Infinity : LAST_ORDER * Math.abs(last.peak - below), source: 'order' },
+      { error: twoBelow === undefined ? Infinity : TWO_ORDERS * Math.abs(last.peak - twoBelow), source: 'two orders' },
+      { error: STEP * last.step, source: 'step' }
+    )
+  }
   return candidates.reduce((widest, bar) => (bar.error > widest.error ? bar : widest))
 }

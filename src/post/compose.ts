@@ -22,7 +22,7 @@ export function barsOf(passes: readonly Pass[], raisers: number): (Bar | null)[]
   return Array.from({ length: raisers }, (_, r) => {
     const evidence = passes.flatMap(({ mesh, order, raisers: readings }): Evidence[] => {
       const reading = readings[r]
-      return reading ? [{ mesh, order, peak: reading.magnitude, leftOver: reading.leftOver }] : []
+      return reading ? [{ mesh, order, peak: reading.magnitude, leftOver: reading.leftOver, step: reading.step }] : []
     })
     return evidence.length > 0 ? errorBar(evidence) : null
   })

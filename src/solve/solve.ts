@@ -1,13 +1,13 @@
 // Mesh and order in, displacements out: condensed element matrices go straight into the sparse factorisation.
 
 import type { Plate } from '../case/plate.ts'
-import { bulgesOf, elementMap } from '../mesh/map.ts'
-import { elementCount, nodeCount, nodesOf, sideCount, sidesOf, triangleCount, type Mesh } from '../mesh/mesh.ts'
-import { dofMap, elementDofs, elementSigns, firstInner, type DofMap } from './dofs.ts'
-import { condense, recoverInner, type CondensedElement } from './condense.ts'
-import { elasticity, quadStiffness, referenceQuad, referenceTriangle, triangleStiffness } from './element.ts'
+import { EXACT_FROM } from '../mesh/map.ts'
+import { elementCount, nodeCount, nodesOf, sideCount, sidesOf, type Mesh } from '../mesh/mesh.ts'
+import { recoverInner, type CondensedElement } from './condense.ts'
+import { dofMap, elementDofs, firstInner, type DofMap } from './dofs.ts'
 import type { Solution } from './field.ts'
 import { imbalance, loadVector } from './load.ts'
+import { condensedElements } from './nested.ts'
 import { analyse, factorise, solveRefined, type CliqueGraph } from './sparse/index.ts'
 
 /**
@@ -16,9 +16,19 @@ import { analyse, factorise, solveRefined, type CliqueGraph } from './sparse/ind
  * @throws Error when the plate falls apart (a bug: a mesh of one piece does not)
  */
 export function solvePlate(plate: Plate, mesh: Mesh, order: number): Solution {
+  return solveOrders(plate, mesh, [order])[0]
+}
+
+/** The same at several orders, in their order; orders from 3 up share one integration of the elements. */
+export function solveOrders(plate: Plate, mesh: Mesh, orders: readonly number[]): Solution[] {
+  if (Math.min(...orders) < EXACT_FROM && orders.length > 1) return orders.map((order) => solvePlate(plate, mesh, order))
+  const elements = condensedElements(plate, mesh, orders)
+  return orders.map((order, k) => solveCondensed(plate, mesh, order, elements[k]))
+}
+
+function solveCondensed(plate: Plate, mesh: Mesh, order: number, elements: readonly CondensedElement[]): Solution {
   const dofs = dofMap(mesh, order)
   const load = loadVector(plate, mesh, dofs)
-  const elements = condensedElements(plate, mesh, order)
   const graph = cliqueGraph(mesh, dofs)
   const fixed = rigidSupports(mesh, dofs)
   const symbolic = analyse(graph)
@@ -34,22 +44,6 @@ export function solvePlate(plate: Plate, mesh: Mesh, order: number): Solution {
   })
   const balance = Math.max(imbalance(plate), reaction(mesh, dofs, elements, fixed, x, load))
   return { plate, mesh, order, coefficient, residual, balance }
-}
-
-/** The condensed stiffness of every element, triangles first, then quads. */
-function condensedElements(plate: Plate, mesh: Mesh, order: number): CondensedElement[] {
-  const triangle = referenceTriangle(order)
-  const quad = referenceQuad(order)
-  const bulges = bulgesOf(plate, mesh, order)
-  const moduli = elasticity(plate.nu)
-  const triangles = triangleCount(mesh)
-  return Array.from({ length: elementCount(mesh) }, (_, e) => {
-    const map = elementMap(mesh, bulges, e)
-    const { count, outer } = (e < triangles ? triangle : quad).modes
-    const sign = elementSigns(mesh, order, count, e)
-    const stiffness = e < triangles ? triangleStiffness(triangle, map, moduli, sign) : quadStiffness(quad, map, moduli, sign)
-    return condense(stiffness, 2 * count, 2 * outer.length)
-  })
 }
 
 /** Which blocks of dofs (nodes, then sides where the order gives them modes) couple: a clique an element. */
