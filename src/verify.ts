@@ -13,17 +13,21 @@ import type { Verdict } from './post/verdict.ts'
 import type { Solution } from './solve/field.ts'
 import { solveOrders } from './solve/solve.ts'
 
-export interface VerifyOptions {
-  /** The case's name in the verdict's `file`. */
-  readonly file: string
-  /** Half-width wanted on every peak, relative; the case's own by default. */
-  readonly tolerance?: number
+/** How a plate is to be solved. */
+export interface SettleOptions {
   /** A fixed order on one mesh; up to order 2, which says nothing by itself, the mesh is refined until its bar holds. */
   readonly order?: number
   /** Kind of elements; quads along arcs and triangles elsewhere if left out. */
   readonly elements?: ElementKind
   /** Milliseconds, for the times in the verdict; without it they are 0. */
   readonly clock?: () => number
+}
+
+export interface VerifyOptions extends SettleOptions {
+  /** The case's name in the verdict's `file`. */
+  readonly file: string
+  /** Half-width wanted on every peak, relative; the case's own by default. */
+  readonly tolerance?: number
 }
 
 export interface Verification {
@@ -53,9 +57,35 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
   const clock = options.clock ?? (() => 0)
   const start = clock()
   const tolerance = options.tolerance ?? plateCase.tolerance
-  const elements = options.elements ?? 'mixed'
   const plate = buildPlate(plateCase)
-  const time = { mesh: 0, solve: 0, total: 0 }
+  const { passes, solution, time } = settle(plate, tolerance, options)
+  const findings = {
+    plateCase,
+    file: options.file,
+    tolerance,
+    fixedOrder: options.order ?? null,
+    elements: options.elements ?? 'mixed',
+    passes,
+    solution,
+    time: { ...time, total: clock() - start }
+  }
+  return { verdict: composeVerdict(findings), plate, solution }
+}
+
+export interface Settled {
+  /** Every solve of the loop as the raisers saw it, in its order; `barsOf` gives their bars. */
+  readonly passes: readonly Pass[]
+  /** The last solve. */
+  readonly solution: Solution
+  /** Milliseconds. */
+  readonly time: { readonly mesh: number; readonly solve: number }
+}
+
+/** Solves a plate, with any tractions that balance, until the bar of every raiser's peak is within the tolerance or nothing helps. */
+export function settle(plate: Plate, tolerance: number, options: SettleOptions = {}): Settled {
+  const clock = options.clock ?? (() => 0)
+  const elements = options.elements ?? 'mixed'
+  const time = { mesh: 0, solve: 0 }
   const passes: Pass[] = []
   const timed = <T>(stage: 'mesh' | 'solve', work: () => T): T => {
     const begun = clock()
@@ -89,8 +119,7 @@ export function verify(plateCase: PlateCase, options: VerifyOptions): Verificati
     if (number === MOST_MESHES || next > MOST_DOFS) break
     fineness = isLow ? { ...fineness, all: number } : finer(plate, fineness, open)
   }
-  time.total = clock() - start
-  return { verdict: composeVerdict({ plateCase, file: options.file, tolerance, fixedOrder: fixed, elements, passes, solution, time }), plate, solution }
+  return { passes, solution, time }
 }
 
 /** An order and the two below it, as far as there are any. */

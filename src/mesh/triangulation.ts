@@ -80,11 +80,14 @@ function isLeftOf({ point }: Triangulation, a: number, b: number, x: number, y: 
   return orient2d(point[2 * a], point[2 * a + 1], point[2 * b], point[2 * b + 1], x, y) < 0
 }
 
-/** The triangle that holds (x, y), on a walk from triangle `from`; or -1 - segment for a segment that stands in the way. */
+/**
+ * The triangle that holds (x, y), on a walk from triangle `from`; or -1 - segment for a segment that stands in the way.
+ * @throws Error when the walk goes in circles, which it cannot in a Delaunay triangulation
+ */
 export function walkTo(grid: Triangulation, from: number, x: number, y: number): number {
   const { point, vertex, neighbour } = grid
   let at = from
-  for (;;) {
+  for (let steps = 0; steps <= grid.triangleCount; steps++) {
     let exit = -1
     for (let side = 0; side < 3 && exit < 0; side++) {
       const a = vertex[3 * at + side]
@@ -95,6 +98,7 @@ export function walkTo(grid: Triangulation, from: number, x: number, y: number):
     at = neighbour[3 * at + exit]
     if (at < 0) return at
   }
+  throw new Error(`no triangle holds (${x}, ${y})`)
 }
 
 /**

@@ -72,8 +72,11 @@ export function composeVerdict({ plateCase, file, tolerance, fixedOrder, element
     const found = nominalStress(plate, r, units)
     const nominal = 'why' in found ? null : found
     const history = passes.map(({ mesh: number, order: passOrder, dof, raisers: readings }) => {
-      const magnitude = (readings[r]?.magnitude ?? 0) * toStress
-      return { mesh: number, order: passOrder, dof, kt: nominal ? magnitude / Math.abs(nominal.net) : null, peak: magnitude }
+      const { magnitude, leftOver, step } = readings[r] ?? { magnitude: 0, leftOver: 0, step: 0 }
+      const share = (part: number) => (magnitude > 0 ? part / magnitude : 0)
+      const peak = magnitude * toStress
+      const kt = nominal ? peak / Math.abs(nominal.net) : null
+      return { mesh: number, order: passOrder, dof, kt, peak, freeEdge: share(leftOver), step: share(step) }
     })
     const base = { id: raiser.id, kind: raiser.kind, nominal, chart: null }
     const top = peaks[r]
@@ -82,6 +85,7 @@ export function composeVerdict({ plateCase, file, tolerance, fixedOrder, element
     const peak: Peak = {
       stress: top.stress * toStress,
       error,
+      setBy: bars[r]!.source,
       at: [top.at[0] * toLength, top.at[1] * toLength],
       where: whereOnEdge(plate, top.loop, top.edge, top.t, units)
     }

@@ -136,7 +136,10 @@ function raiserLines(verdict: Verdict, raiser: RaiserVerdict, verbose: boolean):
       )
     }
   }
-  if (verbose && raiser.history.length > 0) lines.push(...historyTable(raiser).map((line) => `  ${line}`))
+  if (verbose && raiser.history.length > 0) {
+    lines.push(...historyTable(raiser).map((line) => `  ${line}`))
+    if (peak) add(`bar ± ${plainNumber(kt ? kt.error : peak.error, 2)}${kt ? '' : ` ${stress}`}: ${BAR_WORDS[peak.setBy]}`)
+  }
   return lines
 }
 
@@ -170,7 +173,17 @@ function elementTable(verdicts: readonly Verdict[]): string[] {
   return [governing === null ? 'by kind of elements' : `${governing}, by kind of elements`, ...lines.map((line) => `  ${line}`)]
 }
 
-/** Mesh, order, unknowns, Kt (peak where there is no Kt) and its change since the step before. */
+/** What set a bar, in words. */
+const BAR_WORDS = {
+  order: 'twice the last step in order',
+  'two orders': 'a fifth of the last two steps in order',
+  mesh: 'twice the step between the last two meshes',
+  'free edge': 'the stress left over on the free edge at the peak',
+  step: 'the step of the edge stress beside the peak',
+  rounding: 'what rounding may leave'
+} as const
+
+/** Mesh, order, unknowns, Kt (peak where there is no Kt), its change since the step before, and what should be zero at the peak. */
 function historyTable({ history, kt }: RaiserVerdict): string[] {
   const quantity = (k: number) => history[k].kt ?? history[k].peak
   const decimals = decimalsFor(quantity(history.length - 1), 0)
@@ -179,9 +192,11 @@ function historyTable({ history, kt }: RaiserVerdict): string[] {
     String(step.order),
     String(step.dof),
     fixed(quantity(k), decimals),
-    k === 0 ? '' : changeText(quantity(k) / quantity(k - 1) - 1)
+    k === 0 ? '' : changeText(quantity(k) / quantity(k - 1) - 1),
+    percent(step.freeEdge, 2),
+    percent(step.step, 2)
   ])
-  const table = [['mesh', 'order', 'unknowns', kt ? 'Kt net' : 'peak', 'change'], ...rows]
+  const table = [['mesh', 'order', 'unknowns', kt ? 'Kt net' : 'peak', 'change', 'free edge', 'step'], ...rows]
   const widths = table[0].map((_, column) => Math.max(...table.map((row) => row[column].length)))
   return table.map((row) => row.map((cell, column) => cell.padStart(widths[column])).join('  ').trimEnd())
 }

@@ -1,6 +1,7 @@
 // What `verify` gives for a case: the object that `--json` prints. Lengths, forces and stresses are in the case's units.
 
 import type { ElementKind } from '../mesh/mesh.ts'
+import type { BarSource } from './bar.ts'
 
 export type LengthUnit = 'mm' | 'cm' | 'm' | 'in'
 export type ForceUnit = 'N' | 'kN' | 'lbf' | 'kip'
@@ -48,10 +49,11 @@ export interface Kt {
   readonly flexure: number | null
 }
 
-/** Tangential edge stress of largest magnitude, signed; `error` is the half-width of its bar. */
+/** Tangential edge stress of largest magnitude, signed; `error` is the half-width of its bar, `setBy` the evidence that set it. */
 export interface Peak {
   readonly stress: number
   readonly error: number
+  readonly setBy: BarSource
   readonly at: readonly [number, number]
   readonly where: string
 }
@@ -71,6 +73,9 @@ export interface Step {
   readonly dof: number
   readonly kt: number | null
   readonly peak: number
+  /** Stress left over on the free edge at the peak, and step of the edge stress beside it, relative to the peak. */
+  readonly freeEdge: number
+  readonly step: number
 }
 
 export interface Checks {

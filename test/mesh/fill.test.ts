@@ -1,3 +1,4 @@
+import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
 import { buildPlate } from '../../src/case/build.ts'
 import { lengthOf, pointOn, type Plate, type Point } from '../../src/case/plate.ts'
@@ -8,7 +9,8 @@ import { fillPlate, type Filling } from '../../src/mesh/fill.ts'
 import { sizeField, type SizeField } from '../../src/mesh/size.ts'
 import { smoothNodes } from '../../src/mesh/smooth.ts'
 import { frontOf } from '../../src/mesh/strip.ts'
-import { plateOf, polygon } from '../support/plates.ts'
+import { circle, plateOf, polygon } from '../support/plates.ts'
+import { expectNear } from '../support/near.ts'
 import { randomCase } from '../support/random.ts'
 
 /** Angles of all triangles, degrees. */
@@ -72,6 +74,105 @@ describe('triangles that fill a front', () => {
     expect(filling.triangle.length / 3).toBeGreaterThan(80_000)
     expect(filling.triangle.length / 3).toBeLessThan(160_000)
     expect(Math.min(...anglesOf(filling).slice(0, 30_000))).toBeGreaterThan(24.999)
+  })
+})
+
+/** Triangles without those that lie between two boundary pieces that meet at less than 25 degrees. */
+function outsideCorners(filling: Filling): Filling {
+  const pieces = new Set(filling.segments.map(({ a, b }) => `${a} ${b}`))
+  const kept: number[] = []
+  for (let i = 0; i < filling.triangle.length; i += 3) {
+    const [a, b, c] = filling.triangle.subarray(i, i + 3)
+    const isSharp = [[c, a, b], [a, b, c], [b, c, a]].some(([p, q, r]) => {
+      const between = pieces.has(`${p} ${q}`) && pieces.has(`${q} ${r}`)
+      return between && anglesOf({ ...filling, triangle: Int32Array.of(q, r, p) })[0] < 25
+    })
+    if (!isSharp) kept.push(a, b, c)
+  }
+  return { ...filling, triangle: Int32Array.from(kept) }
+}
+
+/** Area of all triangles. */
+function areaOfTriangles({ point, triangle }: Filling): number {
+  let twice = 0
+  for (let i = 0; i < triangle.length; i += 3) {
+    const [a, b, c] = [2 * triangle[i], 2 * triangle[i + 1], 2 * triangle[i + 2]]
+    twice += (point[b] - point[a]) * (point[c + 1] - point[a + 1]) - (point[c] - point[a]) * (point[b + 1] - point[a + 1])
+  }
+  return twice / 2
+}
+
+/** A star-shaped polygon of unequal rays, some of its corners sharp, with a hole around the origin. */
+const star = fc.array(fc.double({ min: 0.3, max: 1, noNaN: true }), { minLength: 3, maxLength: 12 }).map((rays) => {
+  const corner = (ray: number, i: number): Point => [ray * Math.cos((2 * Math.PI * i) / rays.length), ray * Math.sin((2 * Math.PI * i) / rays.length)]
+  return plateOf([polygon(rays.map(corner), null), circle([0, 0], 0.1, -1, -1, null)])
+})
+
+describe('triangles that fill any polygon around a hole', () => {
+  const size = (x: number, y: number) => 0.03 + 0.3 * Math.hypot(x - 0.2, y)
+
+  it('have every piece of the boundary as a side, its area, the wanted size and the same bits again', () => {
+    fc.assert(
+      fc.property(star, (plate) => {
+        const filling = fillPlate(plate, divideBoundary(plate, size), size)
+        const { point, triangle, segments } = filling
+        const sides = new Set<string>()
+        triangle.forEach((a, i) => sides.add(`${a} ${triangle[i % 3 === 2 ? i - 2 : i + 1]}`))
+        let twice = 0
+        for (const { a, b } of segments) {
+          expect(sides.has(`${a} ${b}`)).toBe(true)
+          twice += point[2 * a] * point[2 * b + 1] - point[2 * b] * point[2 * a + 1]
+        }
+        expectNear(areaOfTriangles(filling), twice / 2, { rel: 1e-13, because: 'the area that the pieces enclose' })
+        expect(Math.min(...anglesOf(filling))).toBeGreaterThan(0)
+        expect(Math.min(...anglesOf(outsideCorners(filling)))).toBeGreaterThan(24.999)
+        for (const [a, b] of [...sides].map((side) => side.split(' ').map(Number))) {
+          const middle = [0, 1].map((k) => (point[2 * a + k] + point[2 * b + k]) / 2)
+          const length = Math.hypot(point[2 * a] - point[2 * b], point[2 * a + 1] - point[2 * b + 1])
+          // circumradius at most 0.75 sizes at the centroid, where the size is at most a third of a side's 0.3 growth larger
+          expect(length).toBeLessThan(1.5 * (size(middle[0], middle[1]) + 0.3 * length))
+        }
+        expect(fillPlate(plate, divideBoundary(plate, size), size)).toEqual(filling)
+      }),
+      { seed: 14, numRuns: 100 }
+    )
+  })
+
+  it.each([20, 15, 5, 1, 0.1])('end in a corner of %f degrees with one triangle of that angle', (degrees) => {
+    const corner: Point = [Math.cos((degrees * Math.PI) / 180), Math.sin((degrees * Math.PI) / 180)]
+    const plate = plateOf([polygon([[0, 0], [1, 0], corner], null)])
+    const filling = fillPlate(plate, divideBoundary(plate, () => 0.1), () => 0.1)
+    const angles = anglesOf(filling).sort((a, b) => a - b)
+    expectNear(angles[0], degrees, { abs: 1e-9, because: 'the corner itself' })
+    expect(filling.triangle.length - outsideCorners(filling).triangle.length).toBe(3)
+    expect(Math.min(...anglesOf(outsideCorners(filling)))).toBeGreaterThan(24.999)
+    expect(filling.triangle.length / 3).toBeLessThan(40 + 200 / degrees)
+  })
+
+  it('are graded over six powers of ten at a corner, and few in a bar of length 100 widths', () => {
+    const corners: Point[] = [[0, 0], [1, 0], [1, 0.5], [0.5, 0.5], [0.5, 1], [0, 1]]
+    const plate = plateOf([polygon(corners, null)])
+    const size = (x: number, y: number) => 1e-6 + 0.75 * Math.hypot(x - 0.5, y - 0.5)
+    const graded = fillPlate(plate, divideBoundary(plate, size), size)
+    expect(Math.min(...anglesOf(graded))).toBeGreaterThan(24.999)
+    expect(graded.triangle.length / 3).toBeLessThan(1000)
+    const bar = plateOf([polygon([[0, 0], [1, 0], [1, 0.01], [0, 0.01]], null)])
+    const along = sizeField(bar, { raiser: [], all: 0 })
+    const filled = fillPlate(bar, divideBoundary(bar, along), along)
+    expect(Math.min(...anglesOf(filled))).toBeGreaterThan(24.999)
+    expect(filled.triangle.length / 3).toBeLessThan(400)
+  })
+})
+
+describe('a boundary that cannot be filled', () => {
+  const corners: Point[] = [[0, 0], [1, 0], [1, 1], [0, 1]]
+
+  it.each([
+    ['a hole that touches the edges', plateOf([polygon(corners, null), circle([0.5, 0.5], 0.5, -1, -1, null)])],
+    ['two vertices in one place', plateOf([polygon([[0, 0], [1, 0], [1, 1], [0.5, 1], [0.5, 1], [0, 1]], null)])]
+  ])('is told at once, with the place: %s', (_, plate) => {
+    const size = () => 0.2
+    expect(() => fillPlate(plate, divideBoundary(plate, size), size)).toThrow(/touches itself or is too sharp near/)
   })
 })
 

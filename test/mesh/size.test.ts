@@ -1,6 +1,7 @@
 import fc from 'fast-check'
 import { describe, expect, it } from 'vitest'
-import type { Traction } from '../../src/case/plate.ts'
+import { nearestOn } from '../../src/case/nearest.ts'
+import { outwardNormal, pointOn, type Plate, type Traction } from '../../src/case/plate.ts'
 import { sizeField } from '../../src/mesh/size.ts'
 import { leastOver } from '../../src/mesh/source-tree.ts'
 import { plateFrom } from '../support/case.ts'
@@ -69,5 +70,76 @@ describe('size field', () => {
       const plate = bar({ notches: [{ side: 'top', x: 100, depth, radius: 20 }] })
       expect(at(plate, 100, 25 - depth)).toBeLessThan(2.001 * depth)
     }
+  })
+})
+
+/** A square with circular holes in a grid of 3 x 3 cells, at random places in them; no raisers, so only arcs and gaps ask for sizes. */
+const holed = fc
+  .array(fc.record({ x: fc.double({ min: -1, max: 1, noNaN: true }), y: fc.double({ min: -1, max: 1, noNaN: true }), r: fc.double({ min: 0.05, max: 1, noNaN: true }) }), {
+    minLength: 1,
+    maxLength: 9
+  })
+  .map((holes) => {
+    const circles = holes.map(({ x, y, r }, i) => {
+      const radius = 0.16 * r
+      const room = 1 / 6 - 1.02 * radius
+      return circle([((i % 3) + 0.5) / 3 + room * x, (Math.floor(i / 3) + 0.5) / 3 + room * y], radius, -1, -1, null)
+    })
+    return plateOf([polygon([[0, 0], [1, 0], [1, 1], [0, 1]], null), ...circles])
+  })
+
+/** The field of such a plate from every source, each gap measured between every two edges. */
+function bruteForce(plate: Plate): { x: number; y: number; size: number }[] {
+  return plate.loops.flatMap((loop, l) =>
+    loop.flatMap(({ curve }, e) => {
+      const samples = Array.from({ length: 17 }, (_, i) => ({ at: pointOn(curve, i / 16), normal: outwardNormal(curve, i / 16) }))
+      const gaps = samples.map(({ at: [x, y], normal }) => {
+        const across = plate.loops.flatMap((other, m) =>
+          other.map((edge, f) => {
+            if (m === l && (f === e || (f - e + other.length) % other.length === 1 || (e - f + other.length) % other.length === 1)) return Infinity
+            const [qx, qy] = nearestOn(edge.curve, x, y).at
+            const distance = Math.hypot(qx - x, qy - y)
+            return normal[0] * (x - qx) + normal[1] * (y - qy) > 0.5 * distance ? distance : Infinity
+          })
+        )
+        return { x, y, size: Math.min(...across) }
+      })
+      if (curve.kind === 'line') return gaps
+      // a quarter circle is divided by three for its thirds of a right angle, and each of them by two
+      const arcs = Array.from({ length: 7 }, (_, i) => ({ at: pointOn(curve, i / 6), size: (curve.axes[0] * Math.PI) / 6 }))
+      return [...gaps, ...arcs.map(({ at, size }) => ({ x: at[0], y: at[1], size }))]
+    })
+  )
+}
+
+describe('size field of a square with holes', () => {
+  const anywhere = fc.array(fc.tuple(fc.double({ min: 0, max: 1, noNaN: true }), fc.double({ min: 0, max: 1, noNaN: true })), { minLength: 2, maxLength: 20 })
+
+  it('is what all arcs and the gaps between every two edges give', () => {
+    fc.assert(
+      fc.property(holed, anywhere, (plate, points) => {
+        const sources = bruteForce(plate)
+        const size = sizeField(plate, { raiser: [], all: 0 })
+        for (const [x, y] of points) {
+          const expected = Math.min(...sources.map((s) => s.size + 0.75 * Math.hypot(x - s.x, y - s.y)))
+          expectNear(size(x, y), expected, { rel: 1e-14, because: 'sources left out never ask for less; lengths are rounded' })
+        }
+      }),
+      { seed: 12, numRuns: 100 }
+    )
+  })
+
+  it('differs between two places by at most 0.75 of their distance, halved with all sizes', () => {
+    fc.assert(
+      fc.property(holed, anywhere, fc.integer({ min: -1, max: 3 }), (plate, points, all) => {
+        const size = sizeField(plate, { raiser: [], all })
+        points.slice(1).forEach(([x, y], i) => {
+          const [px, py] = points[i]
+          const most = 0.75 * 2 ** -all * Math.hypot(x - px, y - py)
+          expect(Math.abs(size(x, y) - size(px, py))).toBeLessThanOrEqual(most + 1e-15)
+        })
+      }),
+      { seed: 13, numRuns: 100 }
+    )
   })
 })

@@ -6,12 +6,12 @@ const relief: RaiserVerdict = {
   id: 'relief',
   kind: 'hole',
   kt: { net: 3.1133, gross: 4.2454, error: 0.0011, flexure: null },
-  peak: { stress: 212.27, error: 0.08, at: [95.526, 7.983], where: 'at 86 degrees on the edge of the hole, counter-clockwise from +x' },
+  peak: { stress: 212.27, error: 0.08, setBy: 'order', at: [95.526, 7.983], where: 'at 86 degrees on the edge of the hole, counter-clockwise from +x' },
   nominal: { net: 68.1818, gross: 50, flexure: null, how: 'P / (t (W − d)) = 24000 / (8 × 44)' },
   chart: null,
   history: [
-    { mesh: 1, order: 5, dof: 2100, kt: 3.05, peak: 207.9 },
-    { mesh: 2, order: 6, dof: 13100, kt: 3.1133, peak: 212.27 }
+    { mesh: 1, order: 5, dof: 2100, kt: 3.05, peak: 207.9, freeEdge: 0.02, step: 0.011 },
+    { mesh: 2, order: 6, dof: 13100, kt: 3.1133, peak: 212.27, freeEdge: 0.003, step: 0 }
   ]
 }
 
@@ -19,7 +19,7 @@ const shoulder: RaiserVerdict = {
   id: 'shoulder-1',
   kind: 'shoulder',
   kt: { net: 1.98, gross: 2.97, error: 0.013, flexure: 2.1 },
-  peak: { stress: -148.5, error: 0.92, at: [114.1, -20.2], where: '14 degrees up the fillet from the narrow edge, lower side' },
+  peak: { stress: -148.5, error: 0.92, setBy: 'free edge', at: [114.1, -20.2], where: '14 degrees up the fillet from the narrow edge, lower side' },
   nominal: { net: 75, gross: 50, flexure: 80.123, how: 'P / (t d) = 24000 / (8 × 40)' },
   chart: null,
   history: []
@@ -131,10 +131,11 @@ describe('options', () => {
   it('verbose adds the history with its changes', () => {
     const lines = linesOf({}, { verbose: true, colour: false })
     const head = lines.findIndex((line) => line.includes('unknowns    Kt net'))
-    expect(lines.slice(head, head + 3)).toEqual([
-      '  mesh  order  unknowns    Kt net  change',
-      '     1      5      2100  3.050000',
-      '     2      6     13100  3.113300  +2.1 %'
+    expect(lines.slice(head, head + 4)).toEqual([
+      '  mesh  order  unknowns    Kt net  change  free edge   step',
+      '     1      5      2100  3.050000                2 %  1.1 %',
+      '     2      6     13100  3.113300  +2.1 %      0.3 %    0 %',
+      '  bar ± 0.0011: twice the last step in order'
     ])
   })
 

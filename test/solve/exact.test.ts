@@ -1,65 +1,18 @@
 import { describe, expect, it } from 'vitest'
-import type { Plate, Point, Traction } from '../../src/case/plate.ts'
+import type { Plate, Point } from '../../src/case/plate.ts'
 import { meshPlate } from '../../src/mesh/build.ts'
-import { elementCount } from '../../src/mesh/mesh.ts'
 import { boundarySidesOf } from '../../src/post/pass.ts'
 import { freeEdgeResidual, sidePeaks } from '../../src/post/peak.ts'
-import { edgeStress, FIELD, fieldSampler, stressAtPoint, type Solution } from '../../src/solve/field.ts'
+import { edgeStress, stressAtPoint, type Solution } from '../../src/solve/field.ts'
 import { solvePlate } from '../../src/solve/solve.ts'
+import { kirsch, lame, tractionOf, worstStress, type StressField } from '../support/fields.ts'
 import { circle, plateOf, polygon } from '../support/plates.ts'
 import { expectNear } from '../support/near.ts'
 
-type Stress = [sxx: number, syy: number, sxy: number]
-type StressField = (x: number, y: number) => Stress
-
 const square: Point[] = [[-3, -3], [3, -3], [3, 3], [-3, 3]]
-
-/** The tractions that an exact stress field puts on an edge. */
-function tractionOf(field: StressField): Traction {
-  return ([x, y], [nx, ny]) => {
-    const [sxx, syy, sxy] = field(x, y)
-    return [sxx * nx + sxy * ny, sxy * nx + syy * ny]
-  }
-}
-
-/** Pull S = 1 along x on an infinite plate with a hole of radius 1 (G. Kirsch, Z. VDI 42 (1898) 797). */
-const kirsch: StressField = (x, y) => {
-  const r2 = x * x + y * y
-  const a = 1 / r2
-  const theta = Math.atan2(y, x)
-  const [c2, s2] = [Math.cos(2 * theta), Math.sin(2 * theta)]
-  const sr = (1 - a) / 2 + ((1 - 4 * a + 3 * a * a) / 2) * c2
-  const st = (1 + a) / 2 - ((1 + 3 * a * a) / 2) * c2
-  const trt = -((1 + 2 * a - 3 * a * a) / 2) * s2
-  const [c, s] = [Math.cos(theta), Math.sin(theta)]
-  return [sr * c * c + st * s * s - 2 * trt * s * c, sr * s * s + st * c * c + 2 * trt * s * c, (sr - st) * s * c + trt * (c * c - s * s)]
-}
-
-/** Ring 1 <= r <= 2 under internal pressure 1: s = p a^2 / (b^2 - a^2) (1 -+ b^2 / r^2) (G. Lame, 1852). */
-const lame: StressField = (x, y) => {
-  const r2 = x * x + y * y
-  const [sr, st] = [(1 - 4 / r2) / 3, (1 + 4 / r2) / 3]
-  const [c2, s2, cs] = [(x * x) / r2, (y * y) / r2, (x * y) / r2]
-  return [sr * c2 + st * s2, sr * s2 + st * c2, (sr - st) * cs]
-}
 
 function solved(plate: Plate, order: number, halvings = 0): Solution {
   return solvePlate(plate, meshPlate(plate, { raiser: plate.raisers.map(() => halvings), all: 0 }, 'mixed'), order)
-}
-
-/** Largest difference of any stress component from the exact field, at points inside every element. */
-function worstStress(solution: Solution, exact: StressField): number {
-  const sample = fieldSampler(solution)
-  const reference = Float64Array.of(1 / 3, 1 / 3, 0.1, 0.1, 0.8, 0.1, 0.1, 0.8, 0.45, 0.45, 0.02, 0.5)
-  let worst = 0
-  for (let element = 0; element < elementCount(solution.mesh); element++) {
-    const field = sample(element, reference)
-    for (let q = 0; q < reference.length / 2; q++) {
-      const [x, y, , , ...stress] = field.subarray(FIELD * q, FIELD * (q + 1))
-      exact(x, y).forEach((s, i) => (worst = Math.max(worst, Math.abs(s - stress[i]))))
-    }
-  }
-  return worst
 }
 
 describe('patch tests', () => {

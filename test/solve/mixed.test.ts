@@ -1,39 +1,14 @@
 import { describe, expect, it } from 'vitest'
-import type { Plate, Point, Traction } from '../../src/case/plate.ts'
+import type { Plate, Point } from '../../src/case/plate.ts'
 import type { Segment } from '../../src/mesh/divide.ts'
-import { elementCount, nodesOf, quadCount, triangleCount, type Mesh } from '../../src/mesh/mesh.ts'
+import { quadCount, triangleCount, type Mesh } from '../../src/mesh/mesh.ts'
 import { numberSides } from '../../src/mesh/number.ts'
 import { dofMap, elementDofs, firstInner } from '../../src/solve/dofs.ts'
-import { edgeStress, FIELD, fieldIn, fieldSampler, sideReference, stressAtPoint, type Solution } from '../../src/solve/field.ts'
+import { edgeStress, FIELD, fieldIn, sideReference, stressAtPoint } from '../../src/solve/field.ts'
 import { solvePlate } from '../../src/solve/solve.ts'
+import { lame, tractionOf, worstStress, type StressField } from '../support/fields.ts'
 import { circle, plateOf, polygon } from '../support/plates.ts'
 import { expectNear } from '../support/near.ts'
-
-type StressField = (x: number, y: number) => [sxx: number, syy: number, sxy: number]
-
-function tractionOf(field: StressField): Traction {
-  return ([x, y], [nx, ny]) => {
-    const [sxx, syy, sxy] = field(x, y)
-    return [sxx * nx + sxy * ny, sxy * nx + syy * ny]
-  }
-}
-
-/** Largest difference of any stress component from the exact field, at points inside every element and near its corners. */
-function worstStress(solution: Solution, exact: StressField): number {
-  const sample = fieldSampler(solution)
-  const onTriangle = Float64Array.of(1 / 3, 1 / 3, 0.1, 0.1, 0.8, 0.1, 0.1, 0.8, 0.45, 0.45, 0.02, 0.5)
-  const onQuad = Float64Array.of(0, 0, -0.9, -0.95, 0.95, -0.3, 0.9, 0.9, -0.95, 0.5, 0.2, -0.4)
-  let worst = 0
-  for (let element = 0; element < elementCount(solution.mesh); element++) {
-    const reference = nodesOf(solution.mesh, element).length === 3 ? onTriangle : onQuad
-    const field = sample(element, reference)
-    for (let q = 0; q < reference.length / 2; q++) {
-      const [x, y, , , ...stress] = field.subarray(FIELD * q, FIELD * (q + 1))
-      exact(x, y).forEach((s, i) => (worst = Math.max(worst, Math.abs(s - stress[i]))))
-    }
-  }
-  return worst
-}
 
 const corners: Point[] = [[0, 0], [2, 0.1], [2.2, 1.8], [-0.1, 2]]
 
@@ -140,14 +115,6 @@ describe('a mesh of straight triangles and general quads', () => {
     for (const [x, y] of [[1, 0.04], [2.3, 1], [-0.2, 1], [3, 3]]) expect(stressAtPoint(solution, x, y)).toBeNull()
   })
 })
-
-/** Ring 1 <= r <= 2 under internal pressure 1: s = p a^2 / (b^2 - a^2) (1 -+ b^2 / r^2) (G. Lame, 1852). */
-const lame: StressField = (x, y) => {
-  const r2 = x * x + y * y
-  const [sr, st] = [(1 - 4 / r2) / 3, (1 + 4 / r2) / 3]
-  const [c2, s2, cs] = [(x * x) / r2, (y * y) / r2, (x * y) / r2]
-  return [sr * c2 + st * s2, sr * s2 + st * c2, (sr - st) * cs]
-}
 
 /** The ring in eight sectors between the given radii; quads, those of the outermost layer cut into triangles if wanted. */
 function ring(radii: readonly number[], outermost: 'quad' | 'triangle'): { plate: Plate; mesh: Mesh } {

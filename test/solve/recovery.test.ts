@@ -1,28 +1,14 @@
 import { describe, expect, it } from 'vitest'
-import type { Plate, Point, Traction } from '../../src/case/plate.ts'
+import type { Plate, Point } from '../../src/case/plate.ts'
 import { meshPlate } from '../../src/mesh/build.ts'
 import { elementCount, nodesOf, type ElementKind } from '../../src/mesh/mesh.ts'
 import { FIELD, fieldSampler, type Sampler, type Solution } from '../../src/solve/field.ts'
 import { recoveredSampler, reportedSampler } from '../../src/solve/recovery.ts'
 import { solvePlate } from '../../src/solve/solve.ts'
+import { lame, tractionOf, type StressField } from '../support/fields.ts'
 import { expectNear } from '../support/near.ts'
 import { circle, plateOf, polygon } from '../support/plates.ts'
 
-type Stress = [sxx: number, syy: number, sxy: number]
-type StressField = (x: number, y: number) => Stress
-
-const tractionOf = (field: StressField): Traction => ([x, y], [nx, ny]) => {
-  const [sxx, syy, sxy] = field(x, y)
-  return [sxx * nx + sxy * ny, sxy * nx + syy * ny]
-}
-
-/** Ring 1 <= r <= 2 under internal pressure 1: s = p a^2 / (b^2 - a^2) (1 -+ b^2 / r^2) (G. Lame, 1852). */
-const lame: StressField = (x, y) => {
-  const r2 = x * x + y * y
-  const [sr, st] = [(1 - 4 / r2) / 3, (1 + 4 / r2) / 3]
-  const [c2, s2, cs] = [(x * x) / r2, (y * y) / r2, (x * y) / r2]
-  return [sr * c2 + st * s2, sr * s2 + st * c2, (sr - st) * cs]
-}
 const ring = plateOf([circle([0, 0], 2, 1, -1, null), circle([0, 0], 1, -1, 0, tractionOf(lame))])
 
 function solved(plate: Plate, order: number, all: number, kind: ElementKind): Solution {

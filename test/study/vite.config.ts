@@ -7,7 +7,7 @@ export default defineConfig({
     ssr: true,
     target: 'node20',
     outDir: '.study/built',
-    rollupOptions: { input: { elements: 'test/study/elements.ts', plates: 'test/study/plates.ts' }, output: { entryFileNames: '[name].js' } }
+    rollupOptions: { input: { elements: 'test/study/elements.ts', plates: 'test/study/plates.ts', bars: 'test/study/bars.ts' }, output: { entryFileNames: '[name].js' } }
   },
   ssr: { noExternal: true }
 })

@@ -2,7 +2,7 @@
 
 import { circularArc, type Curve, type Edge, type Part, type Plate, type Point, type Traction } from '../../src/case/plate.ts'
 
-function edge(curve: Curve, part: Part, raiser: number, traction: Traction | null): Edge {
+export function edge(curve: Curve, part: Part, raiser: number, traction: Traction | null): Edge {
   return { curve, part, raiser, side: 0, origin: 0, traction, label: part }
 }
 
@@ -23,6 +23,15 @@ export function circle(centre: Point, radius: number, sense: 1 | -1, raiser: num
   return corner.map((from, i) => {
     const ends = { from, to: corner[(i + 1) % 4] }
     return edge(circularArc(centre, radius, (sense * i * Math.PI) / 2, (sense * Math.PI) / 2, ends), 'hole', raiser, traction)
+  })
+}
+
+/** A full ellipse about (0, 0) with semi-axes along x and y, in quarter arcs, clockwise: a hole. */
+export function ellipseHole(a: number, b: number, raiser: number): Edge[] {
+  const corner: Point[] = [[a, 0], [0, -b], [-a, 0], [0, b]]
+  return corner.map((from, i) => {
+    const arc = { kind: 'arc' as const, from, to: corner[(i + 1) % 4], centre: [0, 0] as Point, axes: [a, b] as Point, tilt: 0 }
+    return edge({ ...arc, start: (-i * Math.PI) / 2, sweep: -Math.PI / 2 }, 'hole', raiser, null)
   })
 }
 

@@ -31,7 +31,7 @@ function raiserWith(peak: number, net: number | null): RaiserVerdict {
     id: 'relief',
     kind: 'hole',
     kt: net === null ? null : { net: Math.abs(peak / net), gross: 4, error: 0.002, flexure: null },
-    peak: { stress: peak, error: 0.1, at: [40, 20], where: '' },
+    peak: { stress: peak, error: 0.1, setBy: 'order', at: [40, 20], where: '' },
     nominal: net === null ? null : { net, gross: 50, flexure: null, how: '' },
     chart: null,
     history: []
