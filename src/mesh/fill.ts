@@ -3,7 +3,7 @@
 // vertices is made by delaunator (which knows no boundary: segments that it misses are halved until all are there), the
 // void is cut away, and then vertices go in one at a time: the middle of a segment that has an obtuse angle opposite it, else
 // the circumcentre of a triangle that is too flat or too large. A segment on an arc is halved on the arc. A corner of the boundary that
-// is itself too sharp keeps one flat triangle. Measured: 98 000 triangles in 0.13 s, 980 000 in 1.3 s.
+// is itself too sharp keeps one flat triangle; edges are cut there at equal distances from the corner (Ruppert's shells). Measured: 98 000 triangles in 0.13 s, 980 000 in 1.3 s.
 
 import Delaunator from 'delaunator'
 import { pointOn } from '../case/plate.ts'
@@ -29,8 +29,8 @@ const LARGE = 0.75
 const MOST_VERTICES = 1_000_000
 /** A piece of the boundary this short is not halved: lengths in plate units are multiples of it, so edges that want it touch. */
 const LEAST_PIECE = 2 ** -40
-/** Segments at a sharp corner may differ by this factor: a halved one is then within it of the other, and halving ends. */
-const CORNER_RATIO = Math.SQRT2
+/** Squared cosine of the angle (45 degrees) below which the pieces at a corner could be halved in turns for ever. */
+const SHARP_COSINE2 = 0.5
 
 /**
  * Fills the plate with triangles of the wanted size, every boundary segment an edge of exactly one of them.
@@ -42,20 +42,25 @@ export function fillPlate(plate: Plate, boundary: DividedBoundary, size: SizeFie
   return refine(plate, start.point, start.segments, start.triangle, size)
 }
 
-function halve(segment: Segment, middle: number): [Segment, Segment] {
-  const t = (segment.t0 + segment.t1) / 2
+function halve(segment: Segment, middle: number, share: number): [Segment, Segment] {
+  const t = parameterAt(segment, share)
   return [
     { ...segment, b: middle, t1: t },
     { ...segment, a: middle, t0: t }
   ]
 }
 
-/** Where a segment is halved. @throws Error where it is too short for that */
-function middleOf(plate: Plate, point: ArrayLike<number>, { onEdge, a, b, loop, edge, t0, t1 }: Segment): Point {
+function parameterAt({ t0, t1 }: Segment, share: number): number {
+  return share === 0.5 ? (t0 + t1) / 2 : t0 + share * (t1 - t0)
+}
+
+/** Where a segment is halved, at a share of its parameters. @throws Error where it is too short for that */
+function middleOf(plate: Plate, point: ArrayLike<number>, segment: Segment, share: number): Point {
+  const { onEdge, a, b, loop, edge } = segment
   const [ax, ay, bx, by] = [point[2 * a], point[2 * a + 1], point[2 * b], point[2 * b + 1]]
   if (Math.hypot(bx - ax, by - ay) < LEAST_PIECE) throw new Error(`the boundary touches itself or is too sharp near (${ax}, ${ay})`)
   if (!onEdge) return [(ax + bx) / 2, (ay + by) / 2]
-  return pointOn(plate.loops[loop][edge].curve, (t0 + t1) / 2)
+  return pointOn(plate.loops[loop][edge].curve, parameterAt(segment, share))
 }
 
 /** Delaunay triangles of the boundary's vertices inside the plate, with missing segments halved until none is missing. */
@@ -79,8 +84,8 @@ function recoverBoundary(plate: Plate, boundary: DividedBoundary) {
     const lost = new Set(missing)
     segments = segments.flatMap((segment) => {
       if (!lost.has(segment)) return [segment]
-      const middle = point.push(...middleOf(plate, point, segment)) / 2 - 1
-      return halve(segment, middle)
+      const middle = point.push(...middleOf(plate, point, segment, 0.5)) / 2 - 1
+      return halve(segment, middle, 0.5)
     })
     if (point.length > 2 * MOST_VERTICES) throw new Error(`the boundary was not recovered with ${MOST_VERTICES} vertices`)
   }
@@ -106,10 +111,35 @@ function keepInside(triangles: ArrayLike<number>, halfedges: ArrayLike<number>, 
   return Int32Array.from(kept)
 }
 
+/** Vertices where two segments on edges enclose less than 45 degrees of the plate. */
+function sharpVertices(point: ArrayLike<number>, segments: readonly Segment[]): Set<number> {
+  const leaving = new Map(segments.map((segment) => [segment.a, segment]))
+  const sharp = new Set<number>()
+  for (const before of segments) {
+    const v = before.b
+    const after = leaving.get(v)!
+    if (!before.onEdge || !after.onEdge) continue
+    const [ux, uy] = [point[2 * after.b] - point[2 * v], point[2 * after.b + 1] - point[2 * v + 1]]
+    const [wx, wy] = [point[2 * before.a] - point[2 * v], point[2 * before.a + 1] - point[2 * v + 1]]
+    const dot = ux * wx + uy * wy
+    if (dot > 0 && ux * wy - uy * wx > 0 && dot * dot > SHARP_COSINE2 * (ux * ux + uy * uy) * (wx * wx + wy * wy)) sharp.add(v)
+  }
+  return sharp
+}
+
+/** Share of a segment at which it is cut: a half, or at a sharp corner what leaves a power of two of plate units there. */
+function shareOf(point: ArrayLike<number>, { a, b, onEdge }: Segment, sharp: ReadonlySet<number>): number {
+  if (!onEdge || sharp.has(a) === sharp.has(b)) return 0.5
+  const length = Math.hypot(point[2 * b] - point[2 * a], point[2 * b + 1] - point[2 * a + 1])
+  const share = 2 ** Math.round(Math.log2(length / 2)) / length
+  return sharp.has(a) ? share : 1 - share
+}
+
 /** The refinement itself. */
 function refine(plate: Plate, startPoint: readonly number[], startSegments: readonly Segment[], startTriangle: Int32Array, size: SizeField): Filling {
   const segments = [...startSegments]
   const grid = linkTriangles(startPoint, startTriangle, segments)
+  const sharp = sharpVertices(startPoint, segments)
   // what is still to be looked at
   const suspectSegments = Array.from(segments.keys())
   let suspects = Array.from({ length: grid.triangleCount }, (_, t) => t)
@@ -127,33 +157,24 @@ function refine(plate: Plate, startPoint: readonly number[], startSegments: read
 
   function halveSegment(s: number): void {
     const segment = segments[s]
-    const [x, y] = middleOf(plate, grid.point, segment)
+    const share = shareOf(grid.point, segment, sharp)
+    const [x, y] = middleOf(plate, grid.point, segment, share)
     if (!openCavity(grid, grid.beside[s], x, y, s)) throw new Error('a boundary segment could not be halved')
-    const [left, right] = halve(segment, grid.vertexCount)
+    const [left, right] = halve(segment, grid.vertexCount, share)
     segments[s] = left
     segments.push(right)
     grid.beside.push(-1)
     addVertex(x, y, [s, segments.length - 1])
   }
 
-  /**
-   * True when the triangle at segment s sees it under an obtuse angle. Where a second segment of about the same length bounds that
-   * triangle too, the corner between them is sharper than 45 degrees and halving would go on in turns for ever.
-   */
+  /** True when the triangle at segment s sees it under an obtuse angle. */
   function encroached(s: number): boolean {
-    const first = 3 * grid.beside[s]
-    const { vertex, neighbour, point } = grid
-    const side = neighbour[first] === -1 - s ? 0 : neighbour[first + 1] === -1 - s ? 1 : 2
-    const c = vertex[first + ((side + 2) % 3)]
-    if (!facesObtusely(s, point[2 * c], point[2 * c + 1])) return false
     const { a, b } = segments[s]
-    const isLikeOwn = (from: number) => distance2(a, b) <= CORNER_RATIO * CORNER_RATIO * distance2(from, c)
-    return !(neighbour[first + ((side + 1) % 3)] < 0 && isLikeOwn(b)) && !(neighbour[first + ((side + 2) % 3)] < 0 && isLikeOwn(a))
-  }
-
-  function distance2(a: number, b: number): number {
-    const { point } = grid
-    return (point[2 * a] - point[2 * b]) ** 2 + (point[2 * a + 1] - point[2 * b + 1]) ** 2
+    for (let k = 0; k < 3; k++) {
+      const c = grid.vertex[3 * grid.beside[s] + k]
+      if (c !== a && c !== b) return facesObtusely(s, grid.point[2 * c], grid.point[2 * c + 1])
+    }
+    return false
   }
 
   /** True when the two longer sides of triangle t are segments: its least angle is a corner of the boundary. */

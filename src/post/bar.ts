@@ -28,9 +28,13 @@ export interface Bar {
   readonly source: BarSource
 }
 
-/** How much of each piece of evidence counts. */
-const LAST_ORDER = 2
-const TWO_ORDERS = 0.2
+/**
+ * How much of the last step in order counts, and of the last two together. Around a peak in the middle of an element, or between two equal
+ * ones, the field is nearly even, and an even order gains little over the odd one below it: the last step is then small for its error.
+ */
+const LAST_ORDER = { odd: 2, even: 4 }
+const TWO_ORDERS = { odd: 0.2, even: 0.35 }
+/** Of the step of the edge stress: it counts where a peak sits at a tangent point, whose error falls slowly with the order. */
 const STEP = 0.6
 /**
  * Of the stress left over: the error of the peak was up to 3.5 times it at order 1 (constant strain says little of the gradient at an
@@ -60,10 +64,11 @@ export function errorBar(evidence: readonly Evidence[]): Bar {
     const coarser = peakAt(last.mesh - 1, last.order)
     candidates.push({ error: coarser === undefined ? Infinity : LAST_MESH * Math.abs(last.peak - coarser), source: 'mesh' })
   } else {
+    const parity = last.order % 2 === 0 ? 'even' : 'odd'
     const [below, twoBelow] = [peakAt(last.mesh, last.order - 1), peakAt(last.mesh, last.order - 2)]
     candidates.push(
-      { error: below === undefined ? Infinity : LAST_ORDER * Math.abs(last.peak - below), source: 'order' },
-      { error: twoBelow === undefined ? Infinity : TWO_ORDERS * Math.abs(last.peak - twoBelow), source: 'two orders' },
+      { error: below === undefined ? Infinity : LAST_ORDER[parity] * Math.abs(last.peak - below), source: 'order' },
+      { error: twoBelow === undefined ? Infinity : TWO_ORDERS[parity] * Math.abs(last.peak - twoBelow), source: 'two orders' },
       { error: STEP * last.step, source: 'step' }
     )
   }

@@ -175,8 +175,8 @@ function elementTable(verdicts: readonly Verdict[]): string[] {
 
 /** What set a bar, in words. */
 const BAR_WORDS = {
-  order: 'twice the last step in order',
-  'two orders': 'a fifth of the last two steps in order',
+  order: 'the last step in order, twice or four times',
+  'two orders': 'a part of the last two steps in order',
   mesh: 'twice the step between the last two meshes',
   'free edge': 'the stress left over on the free edge at the peak',
   step: 'the step of the edge stress beside the peak',

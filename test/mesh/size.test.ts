@@ -120,12 +120,13 @@ describe('size field of a square with holes', () => {
       fc.property(holed, anywhere, (plate, points) => {
         const sources = bruteForce(plate)
         const size = sizeField(plate, { raiser: [], all: 0 })
-        for (const [x, y] of points) {
+        // where a source is left out that should not be, the field is too large at its own place
+        for (const [x, y] of [...points, ...sources.map((s) => [s.x, s.y])]) {
           const expected = Math.min(...sources.map((s) => s.size + 0.75 * Math.hypot(x - s.x, y - s.y)))
           expectNear(size(x, y), expected, { rel: 1e-14, because: 'sources left out never ask for less; lengths are rounded' })
         }
       }),
-      { seed: 12, numRuns: 100 }
+      { seed: 12, numRuns: 40 }
     )
   })
 
