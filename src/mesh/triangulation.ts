@@ -75,7 +75,7 @@ function isInCircle({ point, vertex }: Triangulation, t: number, x: number, y: n
 }
 
 /** True when (x, y) lies strictly left of the line from vertex a to vertex b. */
-function isLeftOf({ point }: Triangulation, a: number, b: number, x: number, y: number): boolean {
+export function isLeftOf({ point }: Triangulation, a: number, b: number, x: number, y: number): boolean {
   // robust-predicates takes y as pointing down: negative means left for us
   return orient2d(point[2 * a], point[2 * a + 1], point[2 * b], point[2 * b + 1], x, y) < 0
 }

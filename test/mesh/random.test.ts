@@ -28,7 +28,8 @@ describe('60 random plates', () => {
       const mesh = meshPlate(plate, { raiser: plate.raisers.map(() => 0), all: 0 }, 'mixed')
       const { residual, balance } = solvePlate(plate, mesh, order)
       expect(residual, `seed ${seed}`).toBeLessThan(1e-14)
-      expect(balance, `seed ${seed}`).toBeLessThan(2e-12)
+      // a bar 50 times as long as wide carries rounding over that lever
+      expect(balance, `seed ${seed}`).toBeLessThan(2e-11)
     }
   })
 })

@@ -62,15 +62,16 @@ function summaryOf(lines: readonly Line[]): string {
   const stages = new Map<string, number>()
   for (const { last } of plates) stages.set(last, (stages.get(last) ?? 0) + 1)
   const percent = (n: number, of: number) => `${((100 * n) / of).toFixed(n === of ? 0 : 1)} %`
-  const first = [...stages].toSorted().map(([last, n]) => `${last.replace('/', ' at order ')}: ${percent(n, plates.length)}`)
+  const byStage = [...stages].toSorted().map(([last, n]) => `mesh ${last.replace('/', ' order ')} ${percent(n, plates.length)}`)
   const tight = ratios.filter((_, i) => raisers[i].error > FLOOR)
+  const errors = raisers.map(({ error }) => error)
+  const seconds = (part: number) => `${(share(plates.map(({ ms }) => ms), part) / 1000).toFixed(1)} s`
   return [
-    `${plates.length} random plates with ${raisers.length} stress raisers: ${misses.length === 0 ? 'no value' : `${misses.length} values`} outside its bar;`,
-    `${percent(settled, plates.length)} of the plates settled to 0.1 % (by the last mesh: ${first.join(', ')}).`,
-    `The bar is ${share(ratios, 0.5).toFixed(0)} times the true error in the median, ${share(ratios, 0.95).toFixed(0)} times at 95 %, and never`,
-    `less than ${Math.min(...tight).toFixed(1)} times; the error itself is ${share(raisers.map((r) => r.error), 0.5).toExponential(0)} in the median and at most`,
-    `${share(raisers.map((r) => r.error), 1).toExponential(0)}. A plate took ${(share(plates.map((p) => p.ms), 0.5) / 1000).toFixed(1)} s in the median,`,
-    `${(share(plates.map((p) => p.ms), 0.95) / 1000).toFixed(1)} s at 95 %, with ${share(plates.map((p) => p.dof), 0.5)} unknowns in the median.`
+    `${plates.length} random plates with ${raisers.length} stress raisers: ${misses.length === 0 ? 'no value' : `${misses.length} values`} outside its bar. ${percent(settled, plates.length)} of the plates`,
+    `settled to 0.1 % (at ${byStage.join(', ')}).`,
+    `The bar is ${share(ratios, 0.5).toFixed(0)} times the true error in the median, ${share(ratios, 0.95).toFixed(0)} times at 95 %, at least ${Math.min(...tight).toFixed(1)} times;`,
+    `the error is ${share(errors, 0.5).toExponential(0)} in the median, ${share(errors, 1).toExponential(0)} at most. A plate took ${seconds(0.5)} in the median, ${seconds(0.95)} at 95 %;`,
+    `${share(plates.map(({ dof }) => dof), 0.5)} unknowns in the median.`
   ].join('\n')
 }
 

@@ -64,14 +64,14 @@ export function randomCase(seed: number): RandomCase {
     const room = i === 0 ? 0 : Math.abs(width - sections[i - 1].width) / 2
     const before = i === 0 ? 0 : sections[i - 1].offset
     const offset = round(before + pick(0, 0, 0.5, -0.5, 0.98) * room)
-    sections.push({ width, length: round(width * pick(between(1, 3), between(1, 3), between(3, 12))), offset })
+    sections.push({ width, length: round(width * pick(between(0.6, 3), between(1, 3), between(1, 3), between(3, 12), logBetween(12, 50))), offset })
     if (i === 0) continue
     const height = Math.abs(width - sections[i - 1].width) / 2
     const wanted = pick(logBetween(0.03, 1) * height, height, between(1, 2) * height, logBetween(0.002, 0.5) * Math.min(width, sections[i - 1].width))
     const narrow = width < sections[i - 1].width ? sections[i] : sections[i - 1]
     fillets.push(round(Math.min(wanted, 0.3 * narrow.length)))
   }
-  const base = { name: `random ${seed}`, thickness: 0.1, material: { nu: pick(0, 0.29, 0.3, between(0, 0.49)) }, plate: { sections, fillets } }
+  const base = { name: `random ${seed}`, thickness: 0.1, material: { nu: pick(0, 0.29, 0.3, 0.499, between(0, 0.499)) }, plate: { sections, fillets } }
   const load = pick({ axial: 1, moment: 0 }, { axial: 1, moment: 0 }, { axial: 0, moment: 0.2 }, { axial: 1, moment: round(between(-0.3, 0.3)) })
 
   const notches: Notch[] = []
@@ -83,7 +83,7 @@ export function randomCase(seed: number): RandomCase {
     if (random() < 0.55) return
     const side = pick<Notch['side']>('top', 'bottom', 'both', 'both')
     const depth = round(width * logBetween(0.02, side === 'both' ? 0.3 : 0.45))
-    const radius = round(depth * pick(1, logBetween(0.08, 1), logBetween(0.08, 1), between(1, 4)))
+    const radius = round(depth * pick(1, logBetween(0.08, 1), logBetween(0.08, 1), logBetween(0.02, 1), between(1, 4), logBetween(1, 50)))
     const angle = pick(0, 0, 0, round(between(20, 90)))
     const halfMouth = depth * Math.tan((angle * Math.PI) / 360) + radius / Math.cos((angle * Math.PI) / 360)
     if (2 * halfMouth < to - from) notches.push({ side, x: round(between(from + halfMouth, to - halfMouth)), depth, radius, angle })
