@@ -66,6 +66,14 @@ describe('triangles that fill a front', () => {
     }
   })
 
+  it('are refined where right angles face undivided edges: their circumcentres lie on those', () => {
+    const plate = plateOf([polygon([[0, 0], [1, 0], [1, 1], [0, 1]], null)])
+    const { triangle } = fillPlate(plate, divideBoundary(plate, () => 10), () => 0.1)
+    // none is larger than an equilateral triangle in a circle of 0.75 sizes: area 0.0073
+    expect(triangle.length / 3).toBeGreaterThan(1 / 0.0074)
+    expect(triangle.length / 3).toBeLessThan(600)
+  })
+
   it('are as many as the size asks for: 100 000 of them', () => {
     const corners: Point[] = [[0, 0], [1, 0], [1, 1], [0, 1]]
     const plate = plateOf([polygon(corners, null)])
@@ -175,6 +183,11 @@ describe('a boundary that cannot be filled', () => {
     const size = () => 0.2
     expect(() => fillPlate(plate, divideBoundary(plate, size), size)).toThrow(/touches itself or is too sharp near/)
   })
+
+  it('is told after a million vertices: a size of 0', () => {
+    const plate = plateOf([polygon(corners, null)])
+    expect(() => fillPlate(plate, divideBoundary(plate, () => 0.2), () => 0)).toThrow('the mesh refinement does not end: 1000000 vertices')
+  }, 30_000)
 })
 
 describe('smoothing', () => {
