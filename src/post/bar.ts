@@ -32,10 +32,14 @@ export interface Bar {
  * How much of the last step in order counts, and of the last two together. Around a peak in the middle of an element, or between two equal
  * ones, the field is nearly even, and an even order gains little over the odd one below it: the last step is then small for its error.
  */
-const LAST_ORDER = { odd: 2, even: 4 }
-const TWO_ORDERS = { odd: 0.2, even: 0.35 }
-/** Of the step of the edge stress: it counts where a peak sits at a tangent point, whose error falls slowly with the order. */
+const LAST_ORDER = { odd: 2, even: 3 }
+const TWO_ORDERS = { odd: 0.2, even: 0.3 }
+/**
+ * Of the step of the edge stress, at the last order and at the one below: the first counts where a peak sits at a tangent point, whose error
+ * falls slowly with the order; the second shows an error that two orders share, which their difference does not.
+ */
 const STEP = 0.6
+const STEP_BELOW = 0.4
 /**
  * Of the stress left over. At orders 1 and 2 it has to carry the bar: on 27 plates with all kinds of elements, two to six halvings, a share of
  * 3 at order 1 (constant strain says little of the gradient at an edge) and 1 at order 2 left no error outside. Up to order 4 the
@@ -55,21 +59,21 @@ const ROUNDING = 1e-10
 /** The bar of the last solve in `evidence`, Infinity while there is nothing to compare it with. */
 export function errorBar(evidence: readonly Evidence[]): Bar {
   const last = evidence[evidence.length - 1]
-  const peakAt = (mesh: number, order: number) => evidence.findLast((e) => e.mesh === mesh && e.order === order)?.peak
+  const solveAt = (mesh: number, order: number) => evidence.findLast((e) => e.mesh === mesh && e.order === order)
   const candidates: Bar[] = [
     { error: ROUNDING * last.peak, source: 'rounding' },
     { error: leftOverShare(last.order) * last.leftOver, source: 'free edge' }
   ]
   if (last.order <= LOW_ORDER) {
-    const coarser = peakAt(last.mesh - 1, last.order)
-    candidates.push({ error: coarser === undefined ? Infinity : LAST_MESH * Math.abs(last.peak - coarser), source: 'mesh' })
+    const coarser = solveAt(last.mesh - 1, last.order)
+    candidates.push({ error: coarser ? LAST_MESH * Math.abs(last.peak - coarser.peak) : Infinity, source: 'mesh' })
   } else {
     const parity = last.order % 2 === 0 ? 'even' : 'odd'
-    const [below, twoBelow] = [peakAt(last.mesh, last.order - 1), peakAt(last.mesh, last.order - 2)]
+    const [below, twoBelow] = [solveAt(last.mesh, last.order - 1), solveAt(last.mesh, last.order - 2)]
     candidates.push(
-      { error: below === undefined ? Infinity : LAST_ORDER[parity] * Math.abs(last.peak - below), source: 'order' },
-      { error: twoBelow === undefined ? Infinity : TWO_ORDERS[parity] * Math.abs(last.peak - twoBelow), source: 'two orders' },
-      { error: STEP * last.step, source: 'step' }
+      { error: below ? LAST_ORDER[parity] * Math.abs(last.peak - below.peak) : Infinity, source: 'order' },
+      { error: twoBelow ? TWO_ORDERS[parity] * Math.abs(last.peak - twoBelow.peak) : Infinity, source: 'two orders' },
+      { error: Math.max(STEP * last.step, STEP_BELOW * (below?.step ?? 0)), source: 'step' }
     )
   }
   return candidates.reduce((widest, bar) => (bar.error > widest.error ? bar : widest))

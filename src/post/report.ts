@@ -175,7 +175,7 @@ function elementTable(verdicts: readonly Verdict[]): string[] {
 
 /** What set a bar, in words. */
 const BAR_WORDS = {
-  order: 'the last step in order, twice or four times',
+  order: 'the last step in order, two or three times',
   'two orders': 'a part of the last two steps in order',
   mesh: 'twice the step between the last two meshes',
   'free edge': 'the stress left over on the free edge at the peak',

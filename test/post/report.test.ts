@@ -135,7 +135,7 @@ describe('options', () => {
       '  mesh  order  unknowns    Kt net  change  free edge   step',
       '     1      5      2100  3.050000                2 %  1.1 %',
       '     2      6     13100  3.113300  +2.1 %      0.3 %    0 %',
-      '  bar ± 0.0011: the last step in order, twice or four times'
+      '  bar ± 0.0011: the last step in order, two or three times'
     ])
   })
 
