@@ -9,6 +9,7 @@ import { readCase } from '../../src/case/read.ts'
 import { meshPlate } from '../../src/mesh/build.ts'
 import { readRaisers } from '../../src/post/pass.ts'
 import { solvePlate } from '../../src/solve/solve.ts'
+import { wrap } from '../../src/post/wrap.ts'
 import { verify } from '../../src/verify.ts'
 import { randomCase } from '../support/random.ts'
 
@@ -66,13 +67,14 @@ function summaryOf(lines: readonly Line[]): string {
   const tight = ratios.filter((_, i) => raisers[i].error > FLOOR)
   const errors = raisers.map(({ error }) => error)
   const seconds = (part: number) => `${(share(plates.map(({ ms }) => ms), part) / 1000).toFixed(1)} s`
-  return [
+  const sentences = [
     `${plates.length} random plates with ${raisers.length} stress raisers: ${misses.length === 0 ? 'no value' : `${misses.length} values`} outside its bar. ${percent(settled, plates.length)} of the plates`,
     `settled to 0.1 % (at ${byStage.join(', ')}).`,
     `The bar is ${share(ratios, 0.5).toFixed(0)} times the true error in the median, ${share(ratios, 0.95).toFixed(0)} times at 95 %, at least ${Math.min(...tight).toFixed(1)} times;`,
     `the error is ${share(errors, 0.5).toExponential(0)} in the median, ${share(errors, 1).toExponential(0)} at most. A plate took ${seconds(0.5)} in the median, ${seconds(0.95)} at 95 %;`,
     `${share(plates.map(({ dof }) => dof), 0.5)} unknowns in the median.`
-  ].join('\n')
+  ]
+  return wrap(sentences.join(' ')).join('\n')
 }
 
 const count = Number(process.argv[2] ?? 400)
